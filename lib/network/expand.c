@@ -1,0 +1,191 @@
+/* The way from the tree to the network. */
+#include "network/expand.h"
+
+#include <string.h>
+
+#include "language/parse.h"
+#include "network/expander.h"
+
+/* ---- limits and growing arrays ------------------------------------------------------------ */
+
+void *anb__room(anb__arena *arena, void *items, uint32_t count, uint32_t *capacity, size_t size) {
+    if (count < *capacity) return items;
+    uint32_t larger = *capacity ? 2 * *capacity : 16;
+    items = anb__arena_grow(arena, items, *capacity * size, larger * size);
+    *capacity = larger;
+    return items;
+}
+
+void anb__report_limit(anb__expander *x, anb__span span, const char *what, const char *limit) {
+    if (!x->halted) anb__error(x->report, span, "limit", "more than %s %s: this is the limit", limit, what);
+    x->halted = true;
+}
+
+bool anb__count_round(anb__expander *x, anb__span span) {
+    if (x->halted) return false;
+    if (++x->rounds <= ANB__LIMIT_ROUNDS) return true;
+    anb__report_limit(x, span, "rounds of loops and expansions", "10 000 000");
+    return false;
+}
+
+bool anb__enter(anb__expander *x, anb__span span) {
+    if (x->calls < ANB__LIMIT_CALLS) {
+        x->calls++;
+        return true;
+    }
+    anb__report_limit(x, span, "levels of nesting", "200");
+    return false;
+}
+
+/* A network that meets the limit inside itself would go on for ever. */
+bool anb__nest(anb__expander *x, anb__span span) {
+    const anb__definition *definition = x->region->definition;
+    if (x->nesting < ANB__LIMIT_NESTING) {
+        x->nesting++;
+        return true;
+    }
+    if (!definition || definition->active < 2) {
+        anb__report_limit(x, span, "levels of nesting", "200");
+        return false;
+    }
+    if (!x->halted) {
+        anb__diagnostic *d = anb__error(x->report, span, "recursion", "the network `%s` places itself without end",
+                                        definition->name->text);
+        anb__add_note(x->report, d, definition->tree->name_span, "it is defined here");
+        anb__add_hint(x->report, d, "networks may stand in one another %d deep", ANB__LIMIT_NESTING);
+    }
+    x->halted = true;
+    return false;
+}
+
+/* ---- the steps ---------------------------------------------------------------------------------- */
+
+static bool is_hoisted(const anb__expander *x, const anb__tree *tree) {
+    for (const anb__definition *d = x->definitions; d; d = d->next)
+        if (d->tree == tree) return true;
+    return false;
+}
+
+/* Networks may come later than their use. */
+static void hoist_networks(anb__expander *x, const anb__tree *parent) {
+    for (const anb__tree *tree = parent->first; tree; tree = tree->next) {
+        if (tree->kind == ANB__TREE_NETWORK && !is_hoisted(x, tree)) anb__define_shape(x, tree, ANB__SYMBOL_NETWORK);
+        if (tree->kind == ANB__TREE_INCLUDE || tree->kind == ANB__TREE_FILE) hoist_networks(x, tree);
+    }
+}
+
+static bool is_replaceable(const anb__symbol *symbol, const void *user) {
+    (void)user;
+    return symbol->kind == ANB__SYMBOL_VALUE && symbol->live;
+}
+
+static void check_replaced(anb__expander *x) {
+    for (uint32_t i = 0; x->replacements && i < x->replacements->set_count; i++) {
+        const anb__replacement *r = &x->replacements->set[i];
+        if (x->replaced[i]) continue;
+        anb__diagnostic *d = anb__error(x->report, r->span, "undefined-name",
+                                        "the netlist has no value `%s` at its top level", r->name->text);
+        anb__hint_nearest(x, d, r->name->text,
+                          anb__symbol_nearest(&x->symbols, 0, r->name->text, is_replaceable, NULL));
+    }
+}
+
+static void prepare(anb__expander *x) {
+    x->top_space.reachable = true;
+    x->top.space = &x->top_space;
+    x->region = &x->top;
+    x->labels = &x->top_space;
+    x->symbols.arena = &x->scratch;
+    x->texts.arena = &x->network->arena;
+    x->definitions_end = &x->definitions;
+    x->references_end = &x->references;
+    x->far_nodes_end = &x->far_nodes;
+    x->combinations = 1;
+    x->lost = x->report->errors > 0;
+    x->network->title = "";
+    anb__new_node(x); /* ground */
+    if (x->replacements) x->replaced = anb__arena_take(&x->scratch, x->replacements->set_count * sizeof *x->replaced);
+}
+
+static void expand(anb__expander *x) {
+    prepare(x);
+    hoist_networks(x, x->root);
+    if (x->replacements && x->replacements->sweep) anb__sweep_statement(x, x->replacements->sweep, true);
+    anb__statements(x, x->root);
+    if (x->halted) return;
+    check_replaced(x);
+    anb__resolve_far_nodes(x);
+    anb__resolve_references(x);
+    anb__check_unused(x);
+    anb__settle_nodes(x);
+    anb__check_ports(x);
+    if (x->halted || x->report->errors) return;
+    anb__check_nodes(x);
+    anb__finish(x);
+}
+
+/* Everything that is allocated on the way jumps here when memory is gone. */
+static anb_status expand_guarded(anb__expander *x) {
+    jmp_buf escape;
+    anb_status status = ANB_OK;
+    x->scratch.escape = x->report->arena->escape = x->names->arena->escape = x->network->arena.escape = &escape;
+    if (setjmp(escape)) status = ANB_MEMORY;
+    else expand(x);
+    if (status == ANB_OK && x->report->errors) status = ANB_INVALID;
+    return status;
+}
+
+anb_status anb__expand(anb__report *report, anb__names *names, const anb__tree *file,
+                       const anb__replacements *replacements, anb__network *out) {
+    anb__expander x = {.report = report, .names = names, .root = file, .replacements = replacements, .network = out};
+    jmp_buf *of_report = report->arena->escape, *of_names = names->arena->escape, *of_out = out->arena.escape;
+    anb_status status = expand_guarded(&x);
+    report->arena->escape = of_report;
+    names->arena->escape = of_names;
+    out->arena.escape = of_out;
+    anb__arena_free(&x.scratch);
+    return status;
+}
+
+bool anb__require_sweep(anb__report *report, const anb__tree *file, const anb__network *network) {
+    if (network->sweep_count) return true;
+    anb__span start = {file->span.source, 0, 0};
+    anb__diagnostic *d = anb__error(report, start, "no-sweep", "the netlist has no sweep");
+    anb__add_hint(report, d, "say at which frequencies, e.g. `sweep 500 MHz .. 1500 MHz points 401`");
+    return false;
+}
+
+/* ---- replacements ---------------------------------------------------------------------------------- */
+
+static const anb__tree *read_one(anb__report *report, anb__names *names, anb__arena *arena, const char *option,
+                                 const char *before, const char *text, anb__tree_kind kind) {
+    size_t start = strlen(before), length = strlen(text);
+    unsigned errors = report->errors;
+    char *whole = anb__arena_take(arena, start + length + 1);
+    memcpy(whole, before, start);
+    memcpy(whole + start, text, length);
+    uint32_t source = anb__add_source(report, option, whole, (uint32_t)(start + length));
+    const anb__tree *file = anb__parse(report, names, arena, source);
+    const anb__tree *tree = file->first;
+    if (errors != report->errors) return NULL;
+    if (tree && tree->kind == kind && !tree->next) return tree;
+    anb__span span = {source, (uint32_t)start, (uint32_t)(start + length)};
+    anb__error(report, span, "wrong-option", "`%s` takes %s", option,
+               kind == ANB__TREE_SWEEP ? "what stands after `sweep`, e.g. `500 MHz .. 1 GHz points 11`"
+                                       : "`name=value`, e.g. `f0=2 GHz`");
+    return NULL;
+}
+
+void anb__read_replacements(anb__report *report, anb__names *names, anb__arena *arena,
+                            const anb_overrides *overrides, anb__replacements *out) {
+    *out = (anb__replacements){0};
+    if (!overrides) return;
+    anb__replacement *set = anb__arena_take(arena, overrides->set_count * sizeof *set);
+    out->set = set;
+    for (size_t i = 0; i < overrides->set_count; i++) {
+        const anb__tree *tree = read_one(report, names, arena, "--set", "", overrides->set[i], ANB__TREE_DEFINE);
+        if (tree) set[out->set_count++] = (anb__replacement){tree->name, tree->first, tree->span};
+    }
+    if (overrides->sweep)
+        out->sweep = read_one(report, names, arena, "--sweep", "sweep ", overrides->sweep, ANB__TREE_SWEEP);
+}

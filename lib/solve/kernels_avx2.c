@@ -1,0 +1,3 @@
+#if defined(__AVX2__)
+#include "solve/kernels.h"
+#endif

@@ -1,0 +1,3 @@
+#if defined(__AVX512F__)
+#include "solve/kernels.h"
+#endif

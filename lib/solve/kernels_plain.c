@@ -1,0 +1,1 @@
+#include "solve/kernels.h"
