@@ -112,3 +112,19 @@ double anb_netlist_frequency(const anb_netlist *netlist, size_t point) {
     anb__grid_fill(&netlist->grid, point, 1, &hz);
     return hz;
 }
+
+/* ---- cases --------------------------------------------------------------------------------------- */
+
+size_t anb_netlist_case_count(const anb_netlist *netlist) { return netlist->network.case_count; }
+
+const char *anb_netlist_case_name(const anb_netlist *netlist, size_t index) {
+    return netlist->network.case_names[index].name;
+}
+
+size_t anb_netlist_case_value_count(const anb_netlist *netlist, size_t index) {
+    return netlist->network.case_names[index].count;
+}
+
+const char *anb_netlist_case_value(const anb_netlist *netlist, size_t index, size_t value) {
+    return netlist->network.case_names[index].values[value];
+}

@@ -37,7 +37,8 @@ static bool check_at(anb__expander *x, const subject *s, const anb__argument_for
     }
     if (has_at || form->at != ANB__AT_MUST) return true;
     anb__diagnostic *d = anb__error(x->report, s->tree->span, "missing-at",
-                                    "%s is an angle, so it needs the frequency at which it holds", what(x, s));
+                                    "%s is an angle, so it needs the frequency at which it holds",
+                                    what(x, s));
     anb__add_hint(x->report, d, "write `%s @ 1 GHz`", anb__quote(x, s->tree->span));
     return false;
 }
@@ -66,7 +67,8 @@ static bool check_number(anb__expander *x, const subject *s, const anb__quantity
         return report_value(x, s, "frequency-here", "may not depend on `frequency`");
     }
     if (q->value.im != 0) return rules & ANB__MAY_COMPLEX || report_value(x, s, "not-real", "has to be real");
-    if (rules & ANB__ABOVE_ZERO && value <= 0) return report_value(x, s, "not-positive", "has to be above zero");
+    if (rules & ANB__ABOVE_ZERO && value <= 0)
+        return report_value(x, s, "not-positive", "has to be above zero");
     if (rules & ANB__NOT_BELOW_ZERO && value < 0)
         return report_value(x, s, "negative", "may not be below zero");
     if (rules & ANB__NOT_ZERO && value == 0) return report_value(x, s, "zero", "may not be zero");
@@ -80,9 +82,10 @@ static bool take_program(anb__expander *x, const subject *s, const anb__quantity
     if (!q->term) return true;
     out->program = anb__program_of(&x->network->arena, &x->scratch, q->term, &x->making);
     if (out->program) return true;
-    anb__error(x->report, s->tree->span, "limit",
-               "`%s` is too large for an expression of `frequency`: it has to keep more than %d values at once",
-               anb__quote(x, s->tree->span), ANB__PROGRAM_SLOTS);
+    anb__error(
+        x->report, s->tree->span, "limit",
+        "`%s` is too large for an expression of `frequency`: it has to keep more than %d values at once",
+        anb__quote(x, s->tree->span), ANB__PROGRAM_SLOTS);
     return false;
 }
 
@@ -125,7 +128,8 @@ static const anb__argument *find(const anb__argument *arguments, unsigned count,
 static bool is_excluded(const anb__part_entry *part, const anb__argument *arguments, unsigned count,
                         unsigned group) {
     for (int i = 0; group && i < part->argument_count; i++)
-        if (part->arguments[i].excludes == group && find(arguments, count, part->arguments[i].name)) return true;
+        if (part->arguments[i].excludes == group && find(arguments, count, part->arguments[i].name))
+            return true;
     return false;
 }
 
@@ -149,13 +153,15 @@ unsigned anb__add_assumed(anb__expander *x, anb__part_kind kind, anb__argument *
         unsigned group = 0;
         for (int i = 0; i < part->argument_count; i++)
             if (part->arguments[i].name == a->argument.name) group = part->arguments[i].excludes;
-        if (is_excluded(part, arguments, count, group) || has_no_sense(&a->argument, arguments, count)) continue;
+        if (is_excluded(part, arguments, count, group) || has_no_sense(&a->argument, arguments, count))
+            continue;
         arguments[count++] = a->argument;
     }
     return count;
 }
 
-static void assume_option(anb__expander *x, const anb__tree *call, anb__part_kind kind, const anb__tree *option) {
+static void assume_option(anb__expander *x, const anb__tree *call, anb__part_kind kind,
+                          const anb__tree *option) {
     const anb__part_entry *part = &anb__parts[kind];
     if (option->kind != ANB__TREE_ARGUMENT) {
         if (option->kind == ANB__TREE_ERROR) return;
@@ -165,8 +171,8 @@ static void assume_option(anb__expander *x, const anb__tree *call, anb__part_kin
     }
     const anb__argument_entry *entry = anb__find_argument(part, option->name->text);
     if (!entry || entry->rules & ANB__NEEDED) {
-        anb__error(x->report, option->name_span, "unknown-option", "`%s` is no option of `%s` that can be assumed",
-                   option->name->text, call->name->text);
+        anb__error(x->report, option->name_span, "unknown-option",
+                   "`%s` is no option of `%s` that can be assumed", option->name->text, call->name->text);
         return;
     }
     anb__value value = anb__evaluate(x, option->first);
@@ -213,8 +219,8 @@ static uint32_t hash_of(const void *data, size_t size) {
     return (uint32_t)(hash ^ hash >> 32);
 }
 
-static struct anb__shared_arguments *slot_of(const anb__expander *x, uint32_t hash, const anb__argument *arguments,
-                                             unsigned count) {
+static struct anb__shared_arguments *slot_of(const anb__expander *x, uint32_t hash,
+                                             const anb__argument *arguments, unsigned count) {
     uint32_t mask = x->shared_capacity - 1, at = hash & mask;
     for (;; at = (at + 1) & mask) {
         struct anb__shared_arguments *here = &x->shared[at];
@@ -234,8 +240,7 @@ static void enlarge(anb__expander *x) {
         if (old[i].arguments) *slot_of(x, old[i].hash, old[i].arguments, old[i].count) = old[i];
 }
 
-const anb__argument *anb__share_arguments(anb__expander *x, const anb__argument *arguments,
-                                          unsigned count) {
+const anb__argument *anb__share_arguments(anb__expander *x, const anb__argument *arguments, unsigned count) {
     if (!count) return NULL;
     if (2 * x->shared_count >= x->shared_capacity) enlarge(x);
     size_t size = count * sizeof *arguments;

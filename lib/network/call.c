@@ -22,8 +22,9 @@ static void report_parameter(anb__expander *x, const anb__definition *definition
     unsigned count = 0;
     for (const anb__tree *p = definition->parameters->first; p && count < ANB__MOST_NAMES; p = p->next)
         known[count++] = p->name->text;
-    anb__diagnostic *d = anb__error(x->report, argument->name_span, "unknown-option", "`%s` has no parameter `%s`",
-                                    definition->name->text, argument->name->text);
+    anb__diagnostic *d = anb__error(x->report, argument->name_span, "unknown-option",
+                                    "`%s` has no parameter `%s`", definition->name->text,
+                                    argument->name->text);
     anb__add_note(x->report, d, definition->tree->name_span, "`%s` is defined here", definition->name->text);
     anb__hint_nearest(x, d, argument->name->text, anb__nearest(argument->name->text, known, count));
 }
@@ -36,8 +37,9 @@ static bool take_value(anb__expander *x, const anb__definition *definition, cons
         if (keyed) {
             report_parameter(x, definition, argument);
         } else {
-            anb__diagnostic *d = anb__error(x->report, argument->span, "argument-count", "`%s` takes %u argument%s",
-                                            definition->name->text, (unsigned)definition->parameter_count,
+            anb__diagnostic *d = anb__error(x->report, argument->span, "argument-count",
+                                            "`%s` takes %u argument%s", definition->name->text,
+                                            (unsigned)definition->parameter_count,
                                             definition->parameter_count == 1 ? "" : "s");
             anb__add_note(x->report, d, definition->tree->name_span, "it is defined here");
         }
@@ -99,7 +101,8 @@ static anb__value evaluate_body(anb__expander *x, anb__definition *definition, a
 
 anb__value anb__own_body(anb__expander *x, anb__span span, anb__definition *definition, anb__value *values) {
     if (definition->active) {
-        anb__diagnostic *d = anb__error(x->report, span, "recursion", "`%s` is made of itself", definition->name->text);
+        anb__diagnostic *d = anb__error(x->report, span, "recursion", "`%s` is made of itself",
+                                        definition->name->text);
         anb__add_note(x->report, d, definition->tree->name_span, "it is defined here");
         return anb__poison();
     }
@@ -109,7 +112,8 @@ anb__value anb__own_body(anb__expander *x, anb__span span, anb__definition *defi
     anb__value value = evaluate_body(x, definition, values);
     definition->active--;
     x->nesting--;
-    anb__add_uses(x, last, definition->name, "used", span);
+    if (span.start != definition->tree->name_span.start)
+        anb__add_uses(x, last, definition->name, "used", span);
     return value;
 }
 
@@ -122,7 +126,8 @@ anb__value anb__own_call(anb__expander *x, const anb__tree *tree, anb__definitio
     anb__value *values = bind(x, tree, definition);
     if (!values) return anb__poison();
     if (definition->tree->kind == ANB__TREE_KIND) return anb__own_body(x, tree->span, definition, values);
-    anb__item item = {.kind = ANB__ITEM_NETWORK, .span = tree->span, .values = values, .definition = definition};
+    anb__item item = {
+        .kind = ANB__ITEM_NETWORK, .span = tree->span, .values = values, .definition = definition};
     return anb__item_value(x, &item);
 }
 
@@ -152,7 +157,7 @@ static anb__value report_unknown(anb__expander *x, const anb__tree *tree) {
     for (const anb__tree *a = tree->first; a; a = a->next)
         if (a->kind != ANB__TREE_ARGUMENT && a->kind != ANB__TREE_NAME) anb__evaluate(x, a);
     if (anb__maybe_defined(x, tree->name)) return anb__poison();
-    const anb__tree *later = later_shape(x->root, tree->name);
+    const anb__tree *later = anb__is_tired(x) ? NULL : later_shape(x->root, tree->name);
     if (later) {
         anb__diagnostic *d = anb__error(x->report, tree->name_span, "undefined-name",
                                         "`%s` is used before it is defined", name);
@@ -165,18 +170,20 @@ static anb__value report_unknown(anb__expander *x, const anb__tree *tree) {
     const anb__value *value = anb__find_value(x, tree->name);
     anb__diagnostic *d;
     if (value)
-        d = anb__error(x->report, tree->name_span, "unknown-part",
-                       "`%s` is %s: it has no arguments", name, anb__value_phrase(x, value));
+        d = anb__error(x->report, tree->name_span, "unknown-part", "`%s` is %s: it has no arguments", name,
+                       anb__value_phrase(x, value));
     else
         d = anb__error(x->report, tree->name_span, x->measuring ? "unknown-measure" : "unknown-part",
                        x->measuring ? "there is no measure or function `%s`"
-                                    : "there is no part, network or function `%s`", name);
+                                    : "there is no part, network or function `%s`",
+                       name);
     if (!value) anb__hint_nearest(x, d, name, anb__nearest(name, names, count));
     return anb__poison();
 }
 
 static anb__value report_later(anb__expander *x, const anb__tree *tree) {
-    anb__error(x->report, tree->span, "not-yet", "`%s(...)` is not available in this version", tree->name->text);
+    anb__error(x->report, tree->span, "not-yet", "`%s(...)` is not available in this version",
+               tree->name->text);
     return anb__poison();
 }
 

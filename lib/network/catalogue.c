@@ -25,7 +25,8 @@ static const anb__layout controlled = {4, 2, {"in", "in_return", "out", "out_ret
 #define MAIN (ANB__NEEDED | ANB__BY_PLACE)
 #define ONE(d) 1, {{d, ANB__AT_NEVER}}
 #define ONE_MAY_AT(d) 1, {{d, ANB__AT_MAY}}
-#define LENGTH_FORMS 3, {{ANB__ANGLE, ANB__AT_MUST}, {ANB__SECOND, ANB__AT_NEVER}, {ANB__METRE, ANB__AT_NEVER}}
+#define LENGTH_FORMS \
+    3, {{ANB__ANGLE, ANB__AT_MUST}, {ANB__SECOND, ANB__AT_NEVER}, {ANB__METRE, ANB__AT_NEVER}}
 #define LOSS_FORMS 2, {{ANB__LEVEL, ANB__AT_MAY}, {ANB__LEVEL_PER_METRE, ANB__AT_MAY}}
 #define RATING {"rating", ANB__ARG_RATING, 0, ANB__ABOVE_ZERO | ANB__CONSTANT, ONE(ANB__WATT)}
 #define Z_OPTION {"z", ANB__ARG_Z, 0, ANB__ABOVE_ZERO | ANB__BY_PLACE, ONE(ANB__OHM)}

@@ -42,12 +42,12 @@ static bool is_live_value(const anb__symbol *symbol, const void *user) {
     return symbol->kind == ANB__SYMBOL_VALUE && symbol->live;
 }
 
-/* A name beside a node may be a value that is misspelt: one that is near a value's and stands nowhere else. */
+/* A name beside a node may be a value that is misspelt: one that is near a value's and stands nowhere else.
+ */
 static const char *misspelt(anb__expander *x, const anb__step *step) {
     if (step->tree->kind != ANB__TREE_NAME || x->nodes[step->node].written > 1) return NULL;
     const char *name = step->tree->name->text;
-    return strlen(name) < 2 ? NULL
-                            : anb__symbol_nearest(&x->symbols, x->region->space->id, name, is_live_value, NULL);
+    return strlen(name) < 2 ? NULL : anb__near(x, x->region->space->id, name, is_live_value, NULL);
 }
 
 /* In a network: a name of the top level, which it does not see. */
@@ -56,38 +56,52 @@ static bool is_outer_value(anb__expander *x, const anb__step *step) {
     const anb__symbol *symbol = anb__symbol_find(&x->symbols, 0, step->tree->name);
     if (!symbol || symbol->kind != ANB__SYMBOL_VALUE || x->nodes[step->node].written > 1) return false;
     if (!anb__first_told(x, step->tree->name)) return true;
-    anb__diagnostic *d = anb__error(x->report, step->tree->span, "undefined-name", "`%s` is not defined in `%s`",
-                                    step->tree->name->text, x->region->definition->name->text);
+    anb__diagnostic *d = anb__error(x->report, step->tree->span, "undefined-name",
+                                    "`%s` is not defined in `%s`", step->tree->name->text,
+                                    x->region->definition->name->text);
     anb__add_note(x->report, d, symbol->span, "it is defined here, outside");
     anb__add_hint(x->report, d, "a network sees its own parameters and names only: make `%s` a parameter",
                   step->tree->name->text);
     return true;
 }
 
+/* `a -- isolator -- b`: the parentheses are missing. */
+static bool is_bare_part(anb__expander *x, const anb__step *step) {
+    anb__part_kind kind;
+    if (step->tree->kind != ANB__TREE_NAME || !anb__find_part(step->tree->name->text, &kind)) return false;
+    anb__diagnostic *d = anb__error(x->report, step->tree->span, "bare-part",
+                                    "`%s` without parentheses is a node, not the part",
+                                    step->tree->name->text);
+    anb__add_hint(x->report, d, "write `%s(...)`", step->tree->name->text);
+    return true;
+}
+
 static void report_side_by_side(anb__expander *x, uint32_t a, uint32_t b) {
     const anb__step first = x->steps[a], second = x->steps[b];
-    if (is_outer_value(x, &second)) return;
+    if (is_outer_value(x, &second) || is_bare_part(x, &second) || is_bare_part(x, &first)) return;
     if (first.tree->kind == ANB__TREE_NAME && anb__maybe_defined(x, first.tree->name)) return;
     if (second.tree->kind == ANB__TREE_NAME && anb__maybe_defined(x, second.tree->name)) return;
     const char *meant = misspelt(x, &second);
     anb__span span = anb__span_join(first.tree->span, second.tree->span);
     if (meant) {
         if (!anb__first_told(x, second.tree->name)) return;
-        anb__diagnostic *d = anb__error(x->report, second.tree->span, "undefined-name",
-                                        "`%s` is not defined, and as a node it has nothing between it and `%s`",
-                                        second.tree->name->text, anb__quote(x, first.tree->span));
+        anb__diagnostic *d = anb__error(
+            x->report, second.tree->span, "undefined-name",
+            "`%s` is not defined, and as a node it has nothing between it and `%s`", second.tree->name->text,
+            anb__quote(x, first.tree->span));
         anb__hint_nearest(x, d, second.tree->name->text, meant);
         return;
     }
     const char *left = anb__quote(x, first.tree->span), *right = anb__quote(x, second.tree->span);
-    anb__diagnostic *d =
-        anb__error(x->report, span, "two-nodes", "there is nothing between the nodes `%s` and `%s`", left, right);
+    anb__diagnostic *d = anb__error(x->report, span, "two-nodes",
+                                    "there is nothing between the nodes `%s` and `%s`", left, right);
     anb__add_hint(x->report, d, "`join %s, %s` makes them one node", left, right);
 }
 
 static void report_start(anb__expander *x, const anb__step *step) {
     anb__diagnostic *d = anb__error(x->report, step->tree->span, "chain-start",
-                                    "a chain begins with a node, but `%s` is none", anb__quote(x, step->tree->span));
+                                    "a chain begins with a node, but `%s` is none",
+                                    anb__quote(x, step->tree->span));
     anb__add_hint(x->report, d, "write `a -- %s -- b`", anb__quote(x, step->tree->span));
 }
 

@@ -17,7 +17,8 @@ static bool holds(anb__tree_kind kind, anb__complex a, anb__complex b) {
 }
 
 static bool side(anb__expander *x, const anb__tree *tree, bool ordered, anb__quantity *q) {
-    unsigned refused = ANB__NO_TOLERANCE | ANB__NO_TUNE | ANB__NO_FREQUENCY | (ordered ? ANB__NO_COMPLEX : 0u);
+    unsigned refused = ANB__NO_TOLERANCE | ANB__NO_TUNE | ANB__NO_FREQUENCY |
+                       (ordered ? ANB__NO_COMPLEX : 0u);
     return anb__operand(x, tree, q) && anb__check_wanted(x, tree, "a condition", q->dimension, refused, q);
 }
 

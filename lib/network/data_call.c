@@ -14,7 +14,8 @@ static uint32_t ports_of_name(const char *path) {
     const char *end = strrchr(path, '.');
     uint32_t ports = 0;
     if (!end || tolower((unsigned char)end[1]) != 's') return 0;
-    for (end += 2; isdigit((unsigned char)*end) && ports < 100000; end++) ports = 10 * ports + (uint32_t)(*end - '0');
+    for (end += 2; isdigit((unsigned char)*end) && ports < 100000; end++)
+        ports = 10 * ports + (uint32_t)(*end - '0');
     return tolower((unsigned char)*end) == 'p' && !end[1] ? ports : 0;
 }
 
@@ -54,7 +55,8 @@ anb__value anb__data_call(anb__expander *x, const anb__tree *tree) {
                        "`touchstone` needs the name of a file, e.g. `touchstone(\"part.s2p\")`");
         return anb__poison();
     }
-    for (const anb__tree *option = file->next; option; option = option->next) right &= check_option(x, option);
+    for (const anb__tree *option = file->next; option; option = option->next)
+        right &= check_option(x, option);
     const char *from = x->report->sources.list[tree->span.source].path;
     const char *path = anb__path_from(&x->scratch, from, file->text);
     int error = unreadable(path);

@@ -1,4 +1,6 @@
 /* Values: from expressions, with their dimensions. */
+#include <string.h>
+
 #include "network/expander.h"
 
 typedef anb__value evaluate_function(anb__expander *x, const anb__tree *tree);
@@ -21,11 +23,12 @@ static void report_trouble(anb__expander *x, const anb__tree *tree, anb__trouble
         [ANB__NEGATIVE_ROOT] = {"negative-root", "is the root of a negative number"},
         [ANB__NEGATIVE_LOGARITHM] = {"negative-logarithm", "is the logarithm of a negative number"},
         [ANB__LOGARITHM_OF_ZERO] = {"logarithm-of-zero", "is the logarithm of zero"},
-        [ANB__OUTSIDE_ONE] = {"outside-domain", "is defined from -1 to 1 only"},
+        [ANB__OUTSIDE_ONE] = {"outside-domain", "takes numbers from -1 to 1 only"},
         [ANB__NOT_REAL] = {"not-real", "takes real numbers only"},
         [ANB__NOT_FINITE] = {"not-finite", "is not finite"},
     };
-    anb__error(x->report, tree->span, texts[trouble][0], "`%s` %s", anb__quote(x, tree->span), texts[trouble][1]);
+    anb__error(x->report, tree->span, texts[trouble][0], "`%s` %s", anb__quote(x, tree->span),
+               texts[trouble][1]);
 }
 
 static anb__term *term_of(anb__expander *x, const anb__quantity *q) {
@@ -92,10 +95,10 @@ static void report_unequal(anb__expander *x, const anb__tree *tree, const anb__q
                            const anb__quantity *b, const char *verb) {
     char left[96], right[96], unit[96];
     const char *quote_a = anb__quote(x, tree->first->span), *quote_b = anb__quote(x, tree->first->next->span);
-    anb__diagnostic *d = anb__error(
-        x->report, tree->span, "unequal-dimensions", "`%s` is %s and `%s` is %s: they cannot be %s", quote_a,
-        anb__dimension_phrase(a->dimension, left, sizeof left), quote_b,
-        anb__dimension_phrase(b->dimension, right, sizeof right), verb);
+    anb__diagnostic *d = anb__error(x->report, tree->span, "unequal-dimensions",
+                                    "`%s` is %s and `%s` is %s: they cannot be %s", quote_a,
+                                    anb__dimension_phrase(a->dimension, left, sizeof left), quote_b,
+                                    anb__dimension_phrase(b->dimension, right, sizeof right), verb);
     const anb__quantity *other = is_plain(a) ? b : a;
     const anb__tree *bare = is_plain(a) ? tree->first : tree->first->next;
     if (is_plain(a) != is_plain(b) && bare->kind == ANB__TREE_NUMBER)
@@ -105,7 +108,8 @@ static void report_unequal(anb__expander *x, const anb__tree *tree, const anb__q
         anb__add_hint(x->report, d, "powers add in W; dBm is a logarithmic scale");
 }
 
-static anb__value sum(anb__expander *x, const anb__tree *tree, const anb__quantity *a, const anb__quantity *b) {
+static anb__value sum(anb__expander *x, const anb__tree *tree, const anb__quantity *a,
+                      const anb__quantity *b) {
     bool minus = tree->kind == ANB__TREE_SUBTRACT;
     anb__dimension dimension;
     if (!sum_dimension(a, b, minus, &dimension)) {
@@ -126,11 +130,13 @@ static anb__value report_scale(anb__expander *x, const anb__tree *tree, const an
     const char *why = dbm     ? "dBm is a power on a scale of its own, which has sums with dB only"
                       : level ? "a level in dB is multiplied or divided by plain numbers only"
                               : "no unit has powers that large";
-    anb__error(x->report, tree->span, "no-product", "`%s` has no meaning: %s", anb__quote(x, tree->span), why);
+    anb__error(x->report, tree->span, "no-product", "`%s` has no meaning: %s", anb__quote(x, tree->span),
+               why);
     return anb__poison();
 }
 
-static anb__value product(anb__expander *x, const anb__tree *tree, const anb__quantity *a, const anb__quantity *b) {
+static anb__value product(anb__expander *x, const anb__tree *tree, const anb__quantity *a,
+                          const anb__quantity *b) {
     bool divides = tree->kind == ANB__TREE_DIVIDE;
     anb__dimension dimension;
     bool defined = divides ? anb__dimension_quotient(a->dimension, b->dimension, &dimension)
@@ -179,8 +185,8 @@ static anb__value evaluate_power(anb__expander *x, const anb__tree *tree) {
     if (!left || !right) return anb__poison();
     char phrase[96];
     if (!is_plain(&b)) {
-        anb__error(x->report, tree->first->next->span, "wrong-exponent", "an exponent is a plain number; `%s` is %s",
-                   anb__quote(x, tree->first->next->span),
+        anb__error(x->report, tree->first->next->span, "wrong-exponent",
+                   "an exponent is a plain number; `%s` is %s", anb__quote(x, tree->first->next->span),
                    anb__dimension_phrase(b.dimension, phrase, sizeof phrase));
         return anb__poison();
     }
@@ -203,8 +209,25 @@ static anb__value evaluate_minus(anb__expander *x, const anb__tree *tree) {
 
 /* ---- the smallest pieces ---------------------------------------------------------------------- */
 
+/* `0.2 dB/m` where `m` is a value too: nobody can tell which is meant. */
+static bool is_ambiguous(anb__expander *x, const anb__tree *tree) {
+    const anb__source *source = &x->report->sources.list[tree->span.source];
+    uint32_t at = tree->span.end;
+    while (at > tree->span.start && source->text[at - 1] != '/') at--;
+    if (at == tree->span.start) return false;
+    const char *half = source->text + at;
+    const anb__name *name = anb__name_of(x->names, half, tree->span.end - at);
+    if (!anb__find_value(x, name)) return false;
+    anb__diagnostic *d = anb__error(x->report, tree->span, "ambiguous-unit",
+                                    "`%s` could be a unit or a division by the value `%s`",
+                                    anb__quote(x, tree->span), name->text);
+    anb__add_hint(x->report, d,
+                  "write blanks around the `/` to divide; for the unit, give the value another name");
+    return true;
+}
+
 static anb__value evaluate_number(anb__expander *x, const anb__tree *tree) {
-    (void)x;
+    if (tree->unit && strchr(tree->unit->name, '/') && is_ambiguous(x, tree)) return anb__poison();
     anb__quantity q = {.value = {tree->number, 0}};
     if (tree->unit) {
         q.dimension = tree->unit->dimension;
@@ -290,10 +313,9 @@ static anb__value evaluate_index(anb__expander *x, const anb__tree *tree) {
         return anb__poison();
     }
     if (at >= 1 && at <= list.count) return list.elements[(uint32_t)at - 1];
-    anb__diagnostic *d =
-        anb__error(x->report, index->span, "no-such-element", "`%s` has %lu element%s, so there is no number %ld",
-                   anb__quote(x, tree->first->span), (unsigned long)list.count, list.count == 1 ? "" : "s",
-                   (long)at);
+    anb__diagnostic *d = anb__error(
+        x->report, index->span, "no-such-element", "`%s` has %lu element%s, so there is no number %ld",
+        anb__quote(x, tree->first->span), (unsigned long)list.count, list.count == 1 ? "" : "s", (long)at);
     if (at == 0) anb__add_hint(x->report, d, "elements count from 1");
     return anb__poison();
 }
@@ -310,10 +332,9 @@ static void report_bounds(anb__expander *x, const anb__tree *tree, const anb__qu
         const char *name = model->kind == ANB__TREE_NUMBER && model->unit
                                ? model->unit->name
                                : anb__dimension_name(other->dimension, unit, sizeof unit);
-        anb__diagnostic *d = anb__error(x->report, plain->span, "missing-unit",
-                                        "`%s` has no unit: the other end of the range is %s",
-                                        anb__quote(x, plain->span),
-                                        anb__dimension_phrase(other->dimension, a, sizeof a));
+        anb__diagnostic *d = anb__error(
+            x->report, plain->span, "missing-unit", "`%s` has no unit: the other end of the range is %s",
+            anb__quote(x, plain->span), anb__dimension_phrase(other->dimension, a, sizeof a));
         if (plain->kind == ANB__TREE_NUMBER)
             anb__add_hint(x->report, d, "write `%s %s`", anb__quote(x, plain->span), name);
         return;
@@ -325,7 +346,8 @@ static void report_bounds(anb__expander *x, const anb__tree *tree, const anb__qu
 }
 
 static bool range_end(anb__expander *x, const anb__tree *tree, anb__quantity *q) {
-    return anb__operand(x, tree, q) && anb__check_wanted(x, tree, "the end of a range", q->dimension, ANB__FIXED, q);
+    return anb__operand(x, tree, q) &&
+           anb__check_wanted(x, tree, "the end of a range", q->dimension, ANB__FIXED, q);
 }
 
 static anb__value evaluate_range(anb__expander *x, const anb__tree *tree) {
@@ -349,7 +371,8 @@ static anb__value evaluate_at(anb__expander *x, const anb__tree *tree) {
     bool placed = anb__wanted(x, frequency, "the frequency after `@`", anb__hertz, ANB__FIXED, &at);
     if (!known || !placed) return anb__poison();
     if (at.value.re <= 0) {
-        anb__error(x->report, frequency->span, "not-positive", "the frequency after `@` has to be above 0 Hz");
+        anb__error(x->report, frequency->span, "not-positive",
+                   "the frequency after `@` has to be above 0 Hz");
         return anb__poison();
     }
     if (q.term) {
@@ -369,11 +392,10 @@ static bool check_tolerance(anb__expander *x, const anb__tree *tree, const anb__
     const anb__tree *spread = tree->first->next;
     bool relative = t->marks & ANB__IS_SHARE;
     if (!relative && !anb__same_dimension(q->dimension, t->dimension)) {
-        anb__diagnostic *d = anb__error(x->report, spread->span, "wrong-tolerance",
-                                        "the tolerance `%s` is %s, but the value is %s",
-                                        anb__quote(x, spread->span),
-                                        anb__dimension_phrase(t->dimension, a, sizeof a),
-                                        anb__dimension_phrase(q->dimension, b, sizeof b));
+        anb__diagnostic *d = anb__error(
+            x->report, spread->span, "wrong-tolerance", "the tolerance `%s` is %s, but the value is %s",
+            anb__quote(x, spread->span), anb__dimension_phrase(t->dimension, a, sizeof a),
+            anb__dimension_phrase(q->dimension, b, sizeof b));
         anb__add_hint(x->report, d, "a relative tolerance is in %% or ppm");
         return false;
     }
@@ -393,7 +415,8 @@ static anb__value evaluate_tolerance(anb__expander *x, const anb__tree *tree) {
     return anb__quantity_value(&q);
 }
 
-/* ---- all of them ------------------------------------------------------------------------------------------ */
+/* ---- all of them ------------------------------------------------------------------------------------------
+ */
 
 static evaluate_function *const evaluators[ANB__TREE_KIND_COUNT] = {
     [ANB__TREE_ERROR] = evaluate_error,

@@ -49,8 +49,8 @@ bool anb__nest(anb__expander *x, anb__span span) {
         return false;
     }
     if (!x->halted) {
-        anb__diagnostic *d = anb__error(x->report, span, "recursion", "the network `%s` places itself without end",
-                                        definition->name->text);
+        anb__diagnostic *d = anb__error(x->report, span, "recursion",
+                                        "the network `%s` places itself without end", definition->name->text);
         anb__add_note(x->report, d, definition->tree->name_span, "it is defined here");
         anb__add_hint(x->report, d, "networks may stand in one another %d deep", ANB__LIMIT_NESTING);
     }
@@ -60,16 +60,11 @@ bool anb__nest(anb__expander *x, anb__span span) {
 
 /* ---- the steps ---------------------------------------------------------------------------------- */
 
-static bool is_hoisted(const anb__expander *x, const anb__tree *tree) {
-    for (const anb__definition *d = x->definitions; d; d = d->next)
-        if (d->tree == tree) return true;
-    return false;
-}
-
 /* Networks may come later than their use. */
 static void hoist_networks(anb__expander *x, const anb__tree *parent) {
     for (const anb__tree *tree = parent->first; tree; tree = tree->next) {
-        if (tree->kind == ANB__TREE_NETWORK && !is_hoisted(x, tree)) anb__define_shape(x, tree, ANB__SYMBOL_NETWORK);
+        if (tree->kind == ANB__TREE_NETWORK && !anb__is_defined(x, tree))
+            anb__define_shape(x, tree, ANB__SYMBOL_NETWORK);
         if (tree->kind == ANB__TREE_INCLUDE || tree->kind == ANB__TREE_FILE) hoist_networks(x, tree);
     }
 }
@@ -85,8 +80,7 @@ static void check_replaced(anb__expander *x) {
         if (x->replaced[i]) continue;
         anb__diagnostic *d = anb__error(x->report, r->span, "undefined-name",
                                         "the netlist has no value `%s` at its top level", r->name->text);
-        anb__hint_nearest(x, d, r->name->text,
-                          anb__symbol_nearest(&x->symbols, 0, r->name->text, is_replaceable, NULL));
+        anb__hint_nearest(x, d, r->name->text, anb__near(x, 0, r->name->text, is_replaceable, NULL));
     }
 }
 
@@ -104,7 +98,8 @@ static void prepare(anb__expander *x) {
     x->lost = x->report->errors > 0;
     x->network->title = "";
     anb__new_node(x); /* ground */
-    if (x->replacements) x->replaced = anb__arena_take(&x->scratch, x->replacements->set_count * sizeof *x->replaced);
+    if (x->replacements)
+        x->replaced = anb__arena_take(&x->scratch, x->replacements->set_count * sizeof *x->replaced);
 }
 
 static void expand(anb__expander *x) {
@@ -128,7 +123,8 @@ static void expand(anb__expander *x) {
 static anb_status expand_guarded(anb__expander *x) {
     jmp_buf escape;
     anb_status status = ANB_OK;
-    x->scratch.escape = x->report->arena->escape = x->names->arena->escape = x->network->arena.escape = &escape;
+    x->scratch.escape = x->report->arena->escape = x->names->arena->escape = x->network->arena.escape =
+        &escape;
     if (setjmp(escape)) status = ANB_MEMORY;
     else expand(x);
     if (status == ANB_OK && x->report->errors) status = ANB_INVALID;
@@ -137,7 +133,8 @@ static anb_status expand_guarded(anb__expander *x) {
 
 anb_status anb__expand(anb__report *report, anb__names *names, const anb__tree *file,
                        const anb__replacements *replacements, anb__network *out) {
-    anb__expander x = {.report = report, .names = names, .root = file, .replacements = replacements, .network = out};
+    anb__expander x = {
+        .report = report, .names = names, .root = file, .replacements = replacements, .network = out};
     jmp_buf *of_report = report->arena->escape, *of_names = names->arena->escape, *of_out = out->arena.escape;
     anb_status status = expand_guarded(&x);
     report->arena->escape = of_report;
@@ -157,25 +154,6 @@ bool anb__require_sweep(anb__report *report, const anb__tree *file, const anb__n
 
 /* ---- replacements ---------------------------------------------------------------------------------- */
 
-static const anb__tree *read_one(anb__report *report, anb__names *names, anb__arena *arena, const char *option,
-                                 const char *before, const char *text, anb__tree_kind kind) {
-    size_t start = strlen(before), length = strlen(text);
-    unsigned errors = report->errors;
-    char *whole = anb__arena_take(arena, start + length + 1);
-    memcpy(whole, before, start);
-    memcpy(whole + start, text, length);
-    uint32_t source = anb__add_source(report, option, whole, (uint32_t)(start + length));
-    const anb__tree *file = anb__parse(report, names, arena, source);
-    const anb__tree *tree = file->first;
-    if (errors != report->errors) return NULL;
-    if (tree && tree->kind == kind && !tree->next) return tree;
-    anb__span span = {source, (uint32_t)start, (uint32_t)(start + length)};
-    anb__error(report, span, "wrong-option", "`%s` takes %s", option,
-               kind == ANB__TREE_SWEEP ? "what stands after `sweep`, e.g. `500 MHz .. 1 GHz points 11`"
-                                       : "`name=value`, e.g. `f0=2 GHz`");
-    return NULL;
-}
-
 void anb__read_replacements(anb__report *report, anb__names *names, anb__arena *arena,
                             const anb_overrides *overrides, anb__replacements *out) {
     *out = (anb__replacements){0};
@@ -183,9 +161,14 @@ void anb__read_replacements(anb__report *report, anb__names *names, anb__arena *
     anb__replacement *set = anb__arena_take(arena, overrides->set_count * sizeof *set);
     out->set = set;
     for (size_t i = 0; i < overrides->set_count; i++) {
-        const anb__tree *tree = read_one(report, names, arena, "--set", "", overrides->set[i], ANB__TREE_DEFINE);
-        if (tree) set[out->set_count++] = (anb__replacement){tree->name, tree->first, tree->span};
+        const char *text = overrides->set[i];
+        uint32_t source = anb__add_source(report, "--set", text, (uint32_t)strlen(text));
+        const anb__tree *tree = anb__parse_override(report, names, arena, source);
+        if (tree->kind != ANB__TREE_DEFINE || !tree->name || !tree->first) continue;
+        set[out->set_count++] = (anb__replacement){tree->name, tree->first, tree->name_span};
     }
-    if (overrides->sweep)
-        out->sweep = read_one(report, names, arena, "--sweep", "sweep ", overrides->sweep, ANB__TREE_SWEEP);
+    if (!overrides->sweep) return;
+    uint32_t source = anb__add_source(report, "--sweep", overrides->sweep, (uint32_t)strlen(overrides->sweep));
+    const anb__tree *tree = anb__parse_sweep_override(report, names, arena, source);
+    if (tree->kind == ANB__TREE_SWEEP) out->sweep = tree;
 }

@@ -117,8 +117,7 @@ typedef struct anb__expander {
     anb__space *own;          /* the space of the placement that was just labelled, or NULL */
     bool negated;             /* inside an odd number of `inverse` */
     bool measuring;           /* in a `require`, where measures may stand */
-    bool dry;                 /* looking for mistakes in what nobody uses */
-    uint32_t space_count, order, making;
+    uint32_t space_count, labelled_spaces, order, making;
     uint32_t nesting, calls, rounds;
     unsigned loop_depth;
     bool halted;              /* a limit was met: nothing more is done */
@@ -177,6 +176,11 @@ void anb__report_limit(anb__expander *x, anb__span span, const char *what, const
 const char *anb__quote(anb__expander *x, anb__span span);
 /* "a part", "a list", "an impedance in ohm" */
 const char *anb__value_phrase(anb__expander *x, const anb__value *value);
+/* True once more errors are known than are kept: words for further ones are not worth their time. */
+static inline bool anb__is_tired(const anb__expander *x) { return x->report->errors >= ANB__ERROR_LIMIT; }
+/* The name of a space that is nearest, of those that are wanted, or NULL. */
+const char *anb__near(const anb__expander *x, uint32_t space, const char *name,
+                      bool (*wanted)(const anb__symbol *symbol, const void *user), const void *user);
 /* A hint at the nearest of some names, where there is one. */
 void anb__hint_nearest(anb__expander *x, anb__diagnostic *d, const char *name, const char *nearest);
 /* To every error since `last`: where the thing was used in which it lies. */
@@ -193,6 +197,8 @@ anb__definition *anb__find_definition(const anb__expander *x, const anb__name *n
 /* Gives a name its kind in the current region; false, reported, where it has another. */
 bool anb__claim(anb__expander *x, anb__symbol *symbol, anb__symbol_kind kind, anb__span span);
 void anb__define(anb__expander *x, const anb__name *name, anb__span span, const anb__value *value);
+/* True where the network that this tree defines is known already. */
+bool anb__is_defined(const anb__expander *x, const anb__tree *tree);
 void anb__define_shape(anb__expander *x, const anb__tree *tree, anb__symbol_kind kind);
 void anb__report_undefined(anb__expander *x, const anb__tree *tree);
 /* True, once for each name, where it is to be reported as undefined. */
@@ -324,7 +330,7 @@ void anb__close_label(anb__expander *x, const anb__label_mark *mark);
 /* Looks for mistakes in networks and own kinds that nothing uses. */
 void anb__check_unused(anb__expander *x);
 
-/* ---- statements (statement.c, port.c, sweep.c, requirement.c) ---------------------------------------------- */
+/* ---- statements (statement.c, port.c, sweep.c, requirement.c) ------------------------------------- */
 
 void anb__statements(anb__expander *x, const anb__tree *parent);
 void anb__port_statement(anb__expander *x, const anb__tree *tree);
@@ -334,6 +340,8 @@ void anb__require_statement(anb__expander *x, const anb__tree *tree);
 void anb__drive_statement(anb__expander *x, const anb__tree *tree);
 void anb__tune_statement(anb__expander *x, const anb__tree *tree);
 void anb__cases_statement(anb__expander *x, const anb__tree *tree);
+/* Enters a CASES without mistakes into the network's list. */
+void anb__list_case(anb__expander *x, const anb__tree *tree);
 /* The dimension of a measure in a `require`. */
 anb__value anb__measure_call(anb__expander *x, const anb__tree *tree, const anb__measure_entry *entry);
 void anb__resolve_references(anb__expander *x);

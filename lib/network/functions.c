@@ -21,14 +21,14 @@ static bool right_count(anb__expander *x, const anb__tree *call, unsigned least,
     for (const anb__tree *a = call->first; a; a = a->next) {
         given++;
         if (a->kind != ANB__TREE_ARGUMENT) continue;
-        anb__error(x->report, a->span, "unknown-option", "`%s` takes its arguments by their order, not by name",
-                   call->name->text);
+        anb__error(x->report, a->span, "unknown-option",
+                   "`%s` takes its arguments by their order, not by name", call->name->text);
         return false;
     }
     if (given >= least && given <= most) return true;
     const char *more = least == most ? "" : most == MOST_ARGUMENTS ? " or more" : " at most";
-    anb__error(x->report, call->span, "argument-count", "`%s` takes %u%s argument%s, not %u", call->name->text,
-               least, more, least == 1 && !*more ? "" : "s", given);
+    anb__error(x->report, call->span, "argument-count", "`%s` takes %u%s argument%s, not %u",
+               call->name->text, least, more, least == 1 && !*more ? "" : "s", given);
     return false;
 }
 
@@ -227,7 +227,8 @@ static anb__value preferred(anb__expander *x, const anb__tree *call) {
     bool known = anb__operand(x, call->first, &q);
     bool found = find_series(x, call->first->next, &per_decade);
     if (!known || !found ||
-        !anb__check_wanted(x, call->first, "a preferred value", q.dimension, ANB__NO_FREQUENCY | ANB__NO_COMPLEX, &q))
+        !anb__check_wanted(x, call->first, "a preferred value", q.dimension,
+                           ANB__NO_FREQUENCY | ANB__NO_COMPLEX, &q))
         return anb__poison();
     if (q.dimension.scale != ANB__SCALE_PLAIN || q.value.re <= 0) {
         anb__error(x->report, call->first->span, "not-positive",

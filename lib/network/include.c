@@ -13,7 +13,7 @@ enum { DEEPEST = 50 };
 typedef struct loaded {
     dev_t device;
     ino_t inode;
-    anb__tree *file;   /* NULL while it is being read */
+    anb__tree *file; /* NULL while it is being read */
     bool active;
     struct loaded *next;
 } loaded;
@@ -151,13 +151,13 @@ static void read_include(loader *l, anb__tree *include) {
     }
     const loaded *known = find(l, &status);
     if (known && known->active)
-        anb__error(l->report, name->span, "include-loop", "`%s` includes itself, by way of this line", name->text);
-    else if (known)
-        hang(include, known->file);
+        anb__error(l->report, name->span, "include-loop", "`%s` includes itself, by way of this line",
+                   name->text);
+    else if (known) hang(include, known->file);
     else if (l->depth == DEEPEST)
-        anb__error(l->report, name->span, "limit", "files include each other %d deep: this is the limit", DEEPEST);
-    else
-        load(l, include, path, &status);
+        anb__error(l->report, name->span, "limit", "files include each other %d deep: this is the limit",
+                   DEEPEST);
+    else load(l, include, path, &status);
 }
 
 /* Includes stand at the top level, perhaps in an `if`. */

@@ -61,11 +61,12 @@ static void report_count(anb__expander *x, const anb__item *item, const anb__reg
     const char *name = item->definition->name->text, *ports = list_ports(x, region);
     anb__diagnostic *d;
     if (region->port_count == 1 && count == 2) {
-        d = anb__error(x->report, span, "node-count", "the network `%s` has one port, `%s`, so it has no other end",
-                       name, ports);
+        d = anb__error(x->report, span, "node-count",
+                       "the network `%s` has one port, `%s`, so it has no other end", name, ports);
         anb__add_hint(x->report, d, "write `shunt %s(...)`, or place it with `on`", name);
     } else {
-        d = anb__error(x->report, span, "node-count", "the network `%s` has %u port%s (%s), but lies on %u node%s", name,
+        d = anb__error(x->report, span, "node-count",
+                       "the network `%s` has %u port%s (%s), but lies on %u node%s", name,
                        (unsigned)region->port_count, region->port_count == 1 ? "" : "s",
                        region->port_count ? ports : "none", (unsigned)count, count == 1 ? "" : "s");
         if (region->port_count > 2) anb__add_hint(x->report, d, "write `%s(...) on (%s)`", name, ports);
@@ -105,14 +106,21 @@ void anb__touch_all(anb__expander *x, const anb__terminal *terminals, uint32_t c
 
 /* ---- placing --------------------------------------------------------------------------------------- */
 
+/* The names inside a placement without a label cannot be reached from anywhere, unless something in
+ * there is looked up at the end. */
 static void expand_inside(anb__expander *x, const anb__item *item, anb__region *region) {
     anb__definition *definition = (anb__definition *)item->definition;
+    anb__symbol *newest = x->symbols.newest;
+    anb__far_node **far_end = x->far_nodes_end;
+    uint32_t spaces = x->labelled_spaces;
     outside out = go_inside(x, region);
     definition->active++;
     bind_parameters(x, definition, item->values);
     anb__statements(x, definition->body);
     definition->active--;
     go_outside(x, &out);
+    bool closed = !region->space->label && far_end == x->far_nodes_end && spaces == x->labelled_spaces;
+    if (closed && !x->report->errors) anb__symbols_forget(&x->symbols, newest);
 }
 
 void anb__place_network(anb__expander *x, const anb__item *item, anb__span span,
@@ -137,7 +145,9 @@ void anb__place_network(anb__expander *x, const anb__item *item, anb__span span,
 
 static void check_definition(anb__expander *x, anb__definition *definition) {
     anb__value *values = anb__arena_take(&x->scratch, definition->parameter_count * sizeof *values);
-    anb__item item = {.kind = ANB__ITEM_NETWORK, .span = definition->tree->name_span, .values = values,
+    anb__item item = {.kind = ANB__ITEM_NETWORK,
+                      .span = definition->tree->name_span,
+                      .values = values,
                       .definition = definition};
     anb__region region = {.space = anb__new_space(x, &x->top_space, NULL), .definition = definition};
     if (definition->tree->kind == ANB__TREE_KIND) anb__own_body(x, item.span, definition, values);
@@ -147,7 +157,8 @@ static void check_definition(anb__expander *x, anb__definition *definition) {
 /* Their bodies are expanded with unknown parameters, and what that has placed is taken back. */
 void anb__check_unused(anb__expander *x) {
     bool incomplete = x->incomplete;
-    uint32_t parts = x->part_count, branches = x->branch_count, nodes = x->node_count, labels = x->label_count;
+    uint32_t parts = x->part_count, branches = x->branch_count, nodes = x->node_count,
+             labels = x->label_count;
     anb__far_node **far_end = x->far_nodes_end;
     for (anb__definition *d = x->definitions; d && !x->halted; d = d->next)
         if (!d->used && !d->broken) check_definition(x, d);

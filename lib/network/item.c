@@ -20,7 +20,8 @@ static const anb__item *poisoned(anb__expander *x, const anb__tree *tree) {
 
 static bool part_of_dimension(const anb__quantity *q, anb__part_kind *kind) {
     bool simple = anb__is_real(q) && !q->term;
-    if (anb__same_dimension(q->dimension, anb__ohm)) *kind = simple ? ANB__PART_RESISTOR : ANB__PART_IMPEDANCE;
+    if (anb__same_dimension(q->dimension, anb__ohm))
+        *kind = simple ? ANB__PART_RESISTOR : ANB__PART_IMPEDANCE;
     else if (anb__same_dimension(q->dimension, anb__siemens)) *kind = ANB__PART_ADMITTANCE;
     else if (anb__same_dimension(q->dimension, anb__henry)) *kind = ANB__PART_INDUCTOR;
     else if (anb__same_dimension(q->dimension, anb__farad)) *kind = ANB__PART_CAPACITOR;
@@ -32,7 +33,8 @@ static void report_no_part(anb__expander *x, const anb__tree *tree, const anb__q
     char phrase[96];
     const char *quote = anb__quote(x, tree->span);
     if (anb__same_dimension(q->dimension, anb__plain)) {
-        anb__diagnostic *d = anb__error(x->report, tree->span, "missing-unit", "`%s` has no unit, so it is no part", quote);
+        anb__diagnostic *d = anb__error(x->report, tree->span, "missing-unit",
+                                        "`%s` has no unit, so it is no part", quote);
         if (tree->kind == ANB__TREE_NUMBER)
             anb__add_hint(x->report, d, "write `%s ohm`, or S, H or F with their prefixes", quote);
         return;
@@ -73,19 +75,22 @@ static bool is_live_value(const anb__symbol *symbol, const void *user) {
 }
 
 static void report_node(anb__expander *x, const anb__tree *tree) {
-    static const char place[] = "a chain in parentheses, or one that is a value, holds parts and `shunt` items only";
+    static const char place[] =
+        "a chain in parentheses, or one that is a value, holds parts and `shunt` items only";
     uint32_t space = x->region->space->id;
-    const anb__symbol *symbol = tree->kind == ANB__TREE_NAME ? anb__symbol_find(&x->symbols, space, tree->name) : NULL;
+    const anb__symbol *symbol = tree->kind == ANB__TREE_NAME
+                                    ? anb__symbol_find(&x->symbols, space, tree->name)
+                                    : NULL;
     bool unknown = tree->kind == ANB__TREE_NAME && (!symbol || symbol->kind != ANB__SYMBOL_NODE);
     if (unknown && (x->frame || (symbol && symbol->kind != ANB__SYMBOL_NONE))) {
         anb__report_undefined(x, tree);
     } else if (unknown && anb__first_told(x, tree->name)) {
-        anb__diagnostic *d =
-            anb__error(x->report, tree->span, "undefined-name", "`%s` is not defined: %s", tree->name->text, place);
-        anb__hint_nearest(x, d, tree->name->text,
-                          anb__symbol_nearest(&x->symbols, space, tree->name->text, is_live_value, NULL));
+        anb__diagnostic *d = anb__error(x->report, tree->span, "undefined-name", "`%s` is not defined: %s",
+                                        tree->name->text, place);
+        anb__hint_nearest(x, d, tree->name->text, anb__near(x, space, tree->name->text, is_live_value, NULL));
     } else if (!unknown) {
-        anb__error(x->report, tree->span, "node-inside", "`%s` is a node: %s", anb__quote(x, tree->span), place);
+        anb__error(x->report, tree->span, "node-inside", "`%s` is a node: %s", anb__quote(x, tree->span),
+                   place);
     }
 }
 
@@ -108,7 +113,8 @@ static const anb__item *several(anb__expander *x, const anb__tree *tree, anb__it
     for (const anb__tree *child = tree->first; child; child = child->next) {
         children[i] = anb__item_of(x, child);
         if (kind == ANB__ITEM_PARALLEL && children[i]->stays)
-            anb__error(x->report, child->span, "shunt-in-parallel", "a `shunt` goes to ground: it cannot stand beside `||`");
+            anb__error(x->report, child->span, "shunt-in-parallel",
+                       "a `shunt` goes to ground: it cannot stand beside `||`");
         item.stays &= children[i]->stays;
         i++;
     }
@@ -126,7 +132,8 @@ static const anb__item *shunt(anb__expander *x, const anb__tree *tree) {
     const anb__item *child = anb__item_of(x, tree->first);
     anb__item item = {.kind = ANB__ITEM_SHUNT, .stays = true, .span = tree->span, .count = 1};
     if (child->stays) {
-        anb__error(x->report, tree->first->span, "shunt-in-shunt", "a `shunt` inside a `shunt`: one is enough");
+        anb__error(x->report, tree->first->span, "shunt-in-shunt",
+                   "a `shunt` inside a `shunt`: one is enough");
         return poisoned(x, tree);
     }
     return single(x, &item, child);
@@ -136,9 +143,11 @@ static const anb__item *labelled(anb__expander *x, const anb__tree *tree) {
     const anb__tree *label = tree->first;
     anb__item item = {.kind = ANB__ITEM_LABELLED, .span = tree->span, .count = 1};
     if (label->next->kind == ANB__TREE_SHUNT) {
-        anb__diagnostic *d = anb__error(x->report, tree->span, "label-of-shunt", "a label names a part, not a `shunt`");
+        anb__diagnostic *d = anb__error(x->report, tree->span, "label-of-shunt",
+                                        "a label names a part, not a `shunt`");
         const anb__tree *inner = label->next->first;
-        anb__add_hint(x->report, d, "write `shunt %s: %s`", anb__quote(x, label->span), anb__quote(x, inner->span));
+        anb__add_hint(x->report, d, "write `shunt %s: %s`", anb__quote(x, label->span),
+                      anb__quote(x, inner->span));
         anb__item_of(x, inner);
         return poisoned(x, tree);
     }
@@ -154,7 +163,8 @@ static const anb__item *wire(anb__expander *x, const anb__tree *tree) {
     anb__argument zero = {0};
     zero.name = ANB__ARG_R;
     zero.dimension = anb__ohm;
-    anb__item item = {.kind = ANB__ITEM_PART, .part = ANB__PART_RESISTOR, .span = tree->span, .argument_count = 1};
+    anb__item item = {
+        .kind = ANB__ITEM_PART, .part = ANB__PART_RESISTOR, .span = tree->span, .argument_count = 1};
     item.arguments = anb__share_arguments(x, &zero, 1);
     return anb__new_item(x, &item);
 }
@@ -201,13 +211,16 @@ anb__value anb__composing_call(anb__expander *x, const anb__tree *tree) {
     }
     if (given != wanted) {
         anb__error(x->report, tree->span, "argument-count", "`%s` is written `%s`", tree->name->text,
-                   repeats ? "repeat(n, part)" : inverts ? "inverse(part)" : "reversed(part)");
+                   repeats   ? "repeat(n, part)"
+                   : inverts ? "inverse(part)"
+                             : "reversed(part)");
         return anb__poison();
     }
     if (repeats) return repeat(x, tree);
     const anb__item *child = anb__item_of(x, tree->first);
     if (child->kind == ANB__ITEM_POISON) return anb__poison();
-    anb__item item = {.kind = inverts ? ANB__ITEM_INVERSE : ANB__ITEM_REVERSED, .span = tree->span, .count = 1};
+    anb__item item = {
+        .kind = inverts ? ANB__ITEM_INVERSE : ANB__ITEM_REVERSED, .span = tree->span, .count = 1};
     item.stays = child->stays;
     return (anb__value){.kind = ANB__VALUE_ITEM, .item = single(x, &item, child)};
 }

@@ -12,14 +12,16 @@ static anb__symbol *claim_label(anb__expander *x, const anb__item *label, anb__s
     anb__symbol *base = anb__symbol_get(&x->symbols, space, label->label_base);
     span.end = span.start + label->label_base->length;
     if (!anb__claim(x, base, ANB__SYMBOL_LABEL, span)) return NULL;
-    anb__symbol *symbol = label->label == label->label_base ? base : anb__symbol_get(&x->symbols, space, label->label);
+    anb__symbol *symbol = label->label == label->label_base
+                              ? base
+                              : anb__symbol_get(&x->symbols, space, label->label);
     if (symbol->live) {
-        anb__diagnostic *d = anb__error(x->report, span, "defined-twice", "there are two parts with the label `%s`",
-                                        label->label->text);
+        anb__diagnostic *d = anb__error(x->report, span, "defined-twice",
+                                        "there are two parts with the label `%s`", label->label->text);
         bool elsewhere = symbol->span.source != span.source || symbol->span.start != span.start;
         if (elsewhere) anb__add_note(x->report, d, symbol->span, "this is the first");
-        if (x->loop_depth) anb__add_hint(x->report, d, "in a loop a label needs an index: `%s[k]`",
-                                         label->label_base->text);
+        if (x->loop_depth)
+            anb__add_hint(x->report, d, "in a loop a label needs an index: `%s[k]`", label->label_base->text);
         return NULL;
     }
     symbol->kind = ANB__SYMBOL_LABEL;
@@ -44,6 +46,7 @@ void anb__close_label(anb__expander *x, const anb__label_mark *mark) {
     const char *text = anb__path_text(x, mark->labels, mark->name);
     uint32_t count = x->part_count - mark->first_part;
     if (count == 1 && is_single(mark->item)) x->parts[mark->first_part].label = text;
-    x->labels_list = anb__room(&x->scratch, x->labels_list, x->label_count, &x->label_capacity, sizeof *x->labels_list);
+    x->labels_list = anb__room(&x->scratch, x->labels_list, x->label_count, &x->label_capacity,
+                               sizeof *x->labels_list);
     x->labels_list[x->label_count++] = (anb__label){text, mark->first_part, count, mark->span};
 }

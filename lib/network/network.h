@@ -80,6 +80,13 @@ typedef struct anb__kept {
     uint32_t count, capacity;
 } anb__kept;
 
+/* A name with `cases`, and each of its values as text for `name=value`. */
+typedef struct anb__case {
+    const char *name;
+    const char *const *values;
+    uint32_t count;
+} anb__case;
+
 typedef struct anb__network {
     anb__arena arena; /* everything below lives in it */
     const char *title; /* "" where there is none */
@@ -97,6 +104,8 @@ typedef struct anb__network {
     uint32_t label_count;
     anb__drive *drives;
     uint32_t drive_count;
+    anb__case *case_names; /* those that no replacement has set */
+    uint32_t case_count, case_capacity;
     anb__kept requirements, tunes, cases; /* the trees live in their own arena */
     bool needs_sweep; /* a requirement has neither a range nor a frequency of its own */
 } anb__network;

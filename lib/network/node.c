@@ -116,7 +116,8 @@ bool anb__node_of(anb__expander *x, const anb__tree *tree, uint32_t *node) {
 
 enum { MOST_LABELS = 64, LONGEST_NAME = 512 };
 
-static bool add_piece(anb__expander *x, const anb__tree *tree, const anb__tree **inner, const anb__name **piece) {
+static bool add_piece(anb__expander *x, const anb__tree *tree, const anb__tree **inner,
+                      const anb__name **piece) {
     const anb__tree *base = tree;
     while (base->kind == ANB__TREE_INDEX) base = base->first;
     if (base->kind == ANB__TREE_NAME) {
@@ -189,21 +190,23 @@ static void report_far_node(anb__expander *x, const anb__far_node *far) {
     for (uint32_t i = 0; i < far->length; i++) {
         bool last = i + 1 == far->length;
         const anb__symbol *symbol = anb__symbol_find(&x->symbols, space, far->path[i]);
-        bool found = symbol && symbol->live && (last ? symbol->kind == ANB__SYMBOL_NODE : symbol->kind == ANB__SYMBOL_LABEL);
+        bool found = symbol && symbol->live &&
+                     (last ? symbol->kind == ANB__SYMBOL_NODE : symbol->kind == ANB__SYMBOL_LABEL);
         if (found) {
             space = symbol->order;
             continue;
         }
         anb__span before = far->span; /* the labels that are there */
         for (uint32_t k = i; k < far->length; k++) before.end -= far->path[k]->length + 1;
-        anb__diagnostic *d =
-            i == 0 ? anb__error(x->report, far->span, "undefined-name", "there is no placement with the label `%s`",
-                                far->path[i]->text)
-                   : anb__error(x->report, far->span, "undefined-name", "`%s` has no %s `%s`", anb__quote(x, before),
-                                last ? "node" : "part", far->path[i]->text);
+        anb__diagnostic *d = i == 0
+                                 ? anb__error(x->report, far->span, "undefined-name",
+                                              "there is no placement with the label `%s`", far->path[i]->text)
+                                 : anb__error(x->report, far->span, "undefined-name", "`%s` has no %s `%s`",
+                                              anb__quote(x, before), last ? "node" : "part",
+                                              far->path[i]->text);
         if (space || i == 0)
             anb__hint_nearest(x, d, far->path[i]->text,
-                              anb__symbol_nearest(&x->symbols, space, far->path[i]->text, last ? is_node : is_label, NULL));
+                              anb__near(x, space, far->path[i]->text, last ? is_node : is_label, NULL));
         return;
     }
 }
@@ -218,7 +221,7 @@ void anb__resolve_far_nodes(anb__expander *x) {
 
 /* ---- checks of the whole --------------------------------------------------------------------- */
 
-enum { MOST_COMPARED = 1000, SHORTEST = 4 };
+enum { MOST_COMPARED = 1000, MOST_SYMBOLS = 10000, SHORTEST = 4 };
 
 static bool is_plain_name(const anb__node *node) {
     return node->name && node->name->text[node->name->length - 1] != ']';
@@ -229,11 +232,12 @@ static bool one_letter_off(const char *a, const char *b) {
     if (anb__edit_distance(a, b, 1) != 1) return false;
     size_t m = strlen(a), n = strlen(b), i = 0;
     while (a[i] && a[i] == b[i]) i++;
-    return !(m == n && strchr("0123456789", a[i]) && strchr("0123456789", b[i])) && m >= SHORTEST && n >= SHORTEST &&
-           !(m != n && strchr("0123456789", m > n ? a[i] : b[i]));
+    return !(m == n && strchr("0123456789", a[i]) && strchr("0123456789", b[i])) && m >= SHORTEST &&
+           n >= SHORTEST && !(m != n && strchr("0123456789", m > n ? a[i] : b[i]));
 }
 
-static const anb__node *namesake(const anb__expander *x, uint32_t node, const uint32_t *named, uint32_t count) {
+static const anb__node *namesake(const anb__expander *x, uint32_t node, const uint32_t *named,
+                                 uint32_t count) {
     for (uint32_t i = 0; i < count; i++) {
         const anb__node *other = &x->nodes[named[i]];
         if (named[i] != node && other->space == x->nodes[node].space &&
@@ -250,10 +254,12 @@ static bool is_near_value(const anb__symbol *symbol, const void *user) {
 /* A name in a chain that nearly is a value's, and stands nowhere else. */
 static void check_value_name(anb__expander *x, const anb__node *n) {
     const char *name = n->name->text;
-    const char *near = anb__symbol_nearest(&x->symbols, n->space->id, name, is_near_value, name);
+    if (x->symbols.count > MOST_SYMBOLS) return;
+    const char *near = anb__near(x, n->space->id, name, is_near_value, name);
     if (!near) return;
     anb__diagnostic *d = anb__warning(x->report, n->span, "near-miss",
-                                      "the node `%s` is written once and is one letter off the value `%s`", name, near);
+                                      "the node `%s` is written once and is one letter off the value `%s`",
+                                      name, near);
     anb__hint_nearest(x, d, name, near);
 }
 
@@ -266,12 +272,13 @@ static void check_node(anb__expander *x, uint32_t node, const uint32_t *named, u
     if (n->touched == 0)
         d = anb__warning(x->report, n->span, "lonely-node", "nothing touches the node `%s`", n->name->text);
     else if (n->touched == 1)
-        d = anb__warning(x->report, n->span, "lonely-node", "only one terminal touches the node `%s`", n->name->text);
+        d = anb__warning(x->report, n->span, "lonely-node", "only one terminal touches the node `%s`",
+                         n->name->text);
     else if (other)
-        d = anb__warning(x->report, n->span, "near-miss", "the node `%s` is written once and is one letter off `%s`",
-                         n->name->text, other->name->text);
-    else if (compared)
-        check_value_name(x, n);
+        d = anb__warning(x->report, n->span, "near-miss",
+                         "the node `%s` is written once and is one letter off `%s`", n->name->text,
+                         other->name->text);
+    else if (compared) check_value_name(x, n);
     if (d && other) anb__hint_nearest(x, d, n->name->text, other->name->text);
 }
 

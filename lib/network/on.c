@@ -51,13 +51,14 @@ static bool order_terminals(anb__expander *x, const placement *p, const char *pa
         const anb__terminal *t = &p->terminals[i];
         int at = t->name ? terminal_of_name(layout, t->name->text) : (int)i;
         if (at == layout->terminal_count) {
-            anb__diagnostic *d = anb__error(x->report, t->span, "unknown-terminal", "`%s` has no terminal `%s`", part,
-                                            t->name->text);
+            anb__diagnostic *d = anb__error(x->report, t->span, "unknown-terminal",
+                                            "`%s` has no terminal `%s`", part, t->name->text);
             anb__add_hint(x->report, d, "its terminals are %s", list_terminals(x, layout));
             return false;
         }
         if (taken[at]) {
-            anb__error(x->report, t->span, "given-twice", "the terminal `%s` gets two nodes", layout->terminals[at]);
+            anb__error(x->report, t->span, "given-twice", "the terminal `%s` gets two nodes",
+                       layout->terminals[at]);
             return false;
         }
         taken[at] = true;
@@ -68,8 +69,9 @@ static bool order_terminals(anb__expander *x, const placement *p, const char *pa
 
 static void report_count(anb__expander *x, const placement *p, const char *part, const anb__layout *layout) {
     anb__diagnostic *d = anb__error(x->report, p->terminals_tree->span, "node-count",
-                                    "`%s` has %d terminals (%s), but lies on %lu node%s", part, layout->terminal_count,
-                                    list_terminals(x, layout), (unsigned long)p->count, p->count == 1 ? "" : "s");
+                                    "`%s` has %d terminals (%s), but lies on %lu node%s", part,
+                                    layout->terminal_count, list_terminals(x, layout),
+                                    (unsigned long)p->count, p->count == 1 ? "" : "s");
     if (p->count == 2 && layout->terminal_count == 4 && !strcmp(part, "transformer"))
         anb__add_hint(x->report, d, "in a chain, `a -- transformer(n) -- b`, both returns are ground");
     else if (p->count == 2 && layout->terminal_count == 4 && !strcmp(part, "line"))
@@ -92,7 +94,8 @@ static void put_between(anb__expander *x, const placement *p, const anb__item *i
     static const anb__layout ends = {2, 0, {"left", "right"}, {{0}}};
     uint32_t nodes[ANB__MOST_TERMINALS];
     if (item->stays)
-        anb__error(x->report, p->tree->span, "shunt-on", "a `shunt` hangs on one node of a chain: it takes no `on`");
+        anb__error(x->report, p->tree->span, "shunt-on",
+                   "a `shunt` hangs on one node of a chain: it takes no `on`");
     else if (p->count != 2) report_count(x, p, anb__quote(x, item->span), &ends);
     else if (p->right && order_terminals(x, p, anb__quote(x, item->span), &ends, nodes)) {
         anb__place_item(x, item, p->tree->span, nodes[0], nodes[1], false);

@@ -14,7 +14,9 @@ static anb__trouble real(double value, anb__complex *out) { return checked(anb__
 
 /* ---- arithmetic ------------------------------------------------------------- */
 
-static anb__trouble add(anb__complex a, anb__complex b, anb__complex *out) { return checked(anb__cadd(a, b), out); }
+static anb__trouble add(anb__complex a, anb__complex b, anb__complex *out) {
+    return checked(anb__cadd(a, b), out);
+}
 
 static anb__trouble subtract(anb__complex a, anb__complex b, anb__complex *out) {
     return checked(anb__csub(a, b), out);

@@ -260,7 +260,8 @@ static bool arc_tangent(const anb__series *a, const anb__series *b, anb__series 
     double x = constant_term(a).re;
     anb__series square = square_around(x), one = anb__series_real(1), below = anb__series_add(&one, &square);
     anb__series derivative;
-    return is_real(a) && anb__series_div(&one, &below, &derivative) && integrate(a, atan(x), &derivative, out);
+    return is_real(a) && anb__series_div(&one, &below, &derivative) &&
+           integrate(a, atan(x), &derivative, out);
 }
 
 static bool arc_of(const anb__series *a, double value, double sign, anb__series *out) {

@@ -36,18 +36,18 @@ static const char *usage_of(anb__expander *x, const anb__part_entry *part) {
 static void report_surplus(anb__expander *x, const collected *c, const anb__tree *argument) {
     unsigned places = 0;
     while (by_place(c->part, places)) places++;
-    anb__diagnostic *d =
-        anb__error(x->report, argument->span, "argument-count",
-                   "`%s` takes %u argument%s by place; further ones are written with their names, `key = value`",
-                   c->part->name, places, places == 1 ? "" : "s");
+    anb__diagnostic *d = anb__error(
+        x->report, argument->span, "argument-count",
+        "`%s` takes %u argument%s by place; further ones are written with their names, `key = value`",
+        c->part->name, places, places == 1 ? "" : "s");
     anb__add_hint(x->report, d, "`%s(%s)`", c->part->name, usage_of(x, c->part));
 }
 
 static void report_option(anb__expander *x, const collected *c, const anb__tree *argument) {
     const char *keys[ANB__ARG_COUNT];
     for (int i = 0; i < c->part->argument_count; i++) keys[i] = c->part->arguments[i].key;
-    anb__diagnostic *d = anb__error(x->report, argument->name_span, "unknown-option", "`%s` has no option `%s`",
-                                    c->part->name, argument->name->text);
+    anb__diagnostic *d = anb__error(x->report, argument->name_span, "unknown-option",
+                                    "`%s` has no option `%s`", c->part->name, argument->name->text);
     const char *nearest = anb__nearest(argument->name->text, keys, c->part->argument_count);
     if (nearest) {
         anb__hint_nearest(x, d, argument->name->text, nearest);
@@ -64,23 +64,23 @@ static void take_argument(anb__expander *x, collected *c, const anb__argument_en
                           const anb__tree *argument, const anb__tree *value_tree) {
     anb__value value = anb__evaluate(x, value_tree);
     if (c->stated >> entry->name & 1) {
-        anb__error(x->report, argument->span, "given-twice", "`%s` of `%s` is given twice", entry->key, c->part->name);
+        anb__error(x->report, argument->span, "given-twice", "`%s` of `%s` is given twice", entry->key,
+                   c->part->name);
         c->right = false;
         return;
     }
     c->stated |= UINT64_C(1) << entry->name;
     if (anb__check_argument(x, value_tree, c->kind, entry, &value, &c->arguments[c->count]))
         c->trees[c->count++] = value_tree;
-    else
-        c->right = false;
+    else c->right = false;
 }
 
 static void collect(anb__expander *x, const anb__tree *call, collected *c) {
     unsigned place = 0;
     for (const anb__tree *a = call->first; a; a = a->next) {
         bool keyed = a->kind == ANB__TREE_ARGUMENT;
-        const anb__argument_entry *entry =
-            keyed ? anb__find_argument(c->part, a->name->text) : by_place(c->part, place++);
+        const anb__argument_entry *entry = keyed ? anb__find_argument(c->part, a->name->text)
+                                                 : by_place(c->part, place++);
         if (entry) {
             take_argument(x, c, entry, a, keyed ? a->first : a);
             continue;
@@ -98,8 +98,8 @@ static void check_needed(anb__expander *x, const anb__tree *call, collected *c) 
     for (int i = 0; i < c->part->argument_count; i++) {
         const anb__argument_entry *entry = &c->part->arguments[i];
         if (!(entry->rules & ANB__NEEDED) || c->stated >> entry->name & 1) continue;
-        anb__diagnostic *d =
-            anb__error(x->report, call->span, "missing-argument", "`%s` needs `%s`", c->part->name, entry->key);
+        anb__diagnostic *d = anb__error(x->report, call->span, "missing-argument", "`%s` needs `%s`",
+                                        c->part->name, entry->key);
         anb__add_hint(x->report, d, "`%s(%s)`", c->part->name, usage_of(x, c->part));
         c->right = false;
         return;
@@ -121,8 +121,9 @@ static void check_excluded(anb__expander *x, const anb__tree *call, collected *c
         const anb__argument_entry *entry = &c->part->arguments[i];
         if (!entry->excludes || !(c->stated >> entry->name & 1)) continue;
         if (first[entry->excludes]) {
-            anb__error(x->report, call->span, "contradiction", "`%s` and `%s` of `%s` contradict each other: give one",
-                       first[entry->excludes]->key, entry->key, c->part->name);
+            anb__error(x->report, call->span, "contradiction",
+                       "`%s` and `%s` of `%s` contradict each other: give one", first[entry->excludes]->key,
+                       entry->key, c->part->name);
             c->right = false;
         }
         first[entry->excludes] = entry;
@@ -145,9 +146,11 @@ static void check_length(anb__expander *x, collected *c, const anb__argument *le
     const anb__tree *tree = NULL;
     if (!in_metres(length)) {
         if (find(c, ANB__ARG_PERMITTIVITY, &tree))
-            refuse(x, c, tree, "`permittivity` needs a length in metres: an angle or a delay says all by itself");
+            refuse(x, c, tree,
+                   "`permittivity` needs a length in metres: an angle or a delay says all by itself");
         if (find(c, ANB__ARG_VELOCITY_FACTOR, &tree))
-            refuse(x, c, tree, "`velocity_factor` needs a length in metres: an angle or a delay says all by itself");
+            refuse(x, c, tree,
+                   "`velocity_factor` needs a length in metres: an angle or a delay says all by itself");
         const anb__argument *loss = find(c, ANB__ARG_LOSS, &tree);
         if (loss && anb__same_dimension(loss->dimension, per_metre))
             refuse(x, c, tree, "a `loss` per metre needs a length in metres");
@@ -162,8 +165,10 @@ static void check_two_lengths(anb__expander *x, const anb__tree *call, collected
     bool one = c->stated >> ANB__ARG_LENGTH & 1, even = c->stated >> ANB__ARG_EVEN_LENGTH & 1;
     bool odd = c->stated >> ANB__ARG_ODD_LENGTH & 1;
     const char *text = NULL;
-    if (one && (even || odd)) text = "`coupled_lines` takes `length`, or `even_length` and `odd_length`, not both";
-    else if (!one && !(even && odd)) text = "`coupled_lines` needs `length`, or both `even_length` and `odd_length`";
+    if (one && (even || odd))
+        text = "`coupled_lines` takes `length`, or `even_length` and `odd_length`, not both";
+    else if (!one && !(even && odd))
+        text = "`coupled_lines` needs `length`, or both `even_length` and `odd_length`";
     if (!text) return;
     anb__error(x->report, call->span, "missing-argument", "%s", text);
     c->right = false;
@@ -177,17 +182,6 @@ static void check_resonance(anb__expander *x, collected *c, anb__argument_name m
         refuse(x, c, tree, "`srf` needs a value above zero to resonate with");
 }
 
-static void check_line_constants(anb__expander *x, const anb__tree *call, collected *c) {
-    static const anb__argument_name pairs[2][2] = {{ANB__ARG_R, ANB__ARG_L}, {ANB__ARG_G, ANB__ARG_C}};
-    static const char *const texts[] = {"`line_constants` needs `r` or `l` above zero",
-                                        "`line_constants` needs `g` or `c` above zero"};
-    for (int i = 0; i < 2; i++) {
-        const anb__argument *a = find(c, pairs[i][0], NULL), *b = find(c, pairs[i][1], NULL);
-        if (!a || !b || a->program || b->program || a->value.re != 0 || b->value.re != 0) continue;
-        refuse(x, c, call, texts[i]);
-    }
-}
-
 static void check_together(anb__expander *x, const anb__tree *call, collected *c) {
     static const anb__argument_name lengths[] = {ANB__ARG_LENGTH, ANB__ARG_EVEN_LENGTH, ANB__ARG_ODD_LENGTH};
     for (int i = 0; i < 3; i++) {
@@ -197,7 +191,6 @@ static void check_together(anb__expander *x, const anb__tree *call, collected *c
     if (c->kind == ANB__PART_COUPLED_LINES) check_two_lengths(x, call, c);
     if (c->kind == ANB__PART_INDUCTOR) check_resonance(x, c, ANB__ARG_L);
     if (c->kind == ANB__PART_CAPACITOR) check_resonance(x, c, ANB__ARG_C);
-    if (c->kind == ANB__PART_LINE_CONSTANTS) check_line_constants(x, call, c);
 }
 
 /* ---- the item ------------------------------------------------------------------------------ */

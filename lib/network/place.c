@@ -27,8 +27,10 @@ void anb__add_part(anb__expander *x, const anb__item *item, anb__span span, cons
     part->branch_count = layout->branch_count;
     for (int i = 0; i < layout->branch_count; i++) {
         uint8_t plus = layout->branches[i][0], minus = layout->branches[i][1];
-        x->branches = anb__room(&x->scratch, x->branches, x->branch_count, &x->branch_capacity, sizeof *x->branches);
-        x->branches[x->branch_count++] = (anb__branch){nodes[plus], minus == ANB__TO_GROUND ? 0 : nodes[minus]};
+        x->branches = anb__room(&x->scratch, x->branches, x->branch_count, &x->branch_capacity,
+                                sizeof *x->branches);
+        x->branches[x->branch_count++] = (anb__branch){nodes[plus],
+                                                       minus == ANB__TO_GROUND ? 0 : nodes[minus]};
     }
     for (int i = 0; i < layout->terminal_count; i++) anb__touch(x, nodes[i]);
 }
@@ -51,10 +53,11 @@ static void place_part(anb__expander *x, const anb__item *item, const spot *at) 
         return;
     }
     const anb__layout *on = entry->on;
-    anb__diagnostic *d = anb__error(x->report, at->span, "needs-on", "`%s` has %d terminals: it cannot stand in a chain",
-                                    entry->name, on->terminal_count);
-    anb__add_hint(x->report, d, "write `%s(...) on (%s, %s, %s%s%s)`", entry->name, on->terminals[0], on->terminals[1],
-                  on->terminals[2], on->terminal_count > 3 ? ", " : "",
+    anb__diagnostic *d = anb__error(x->report, at->span, "needs-on",
+                                    "`%s` has %d terminals: it cannot stand in a chain", entry->name,
+                                    on->terminal_count);
+    anb__add_hint(x->report, d, "write `%s(...) on (%s, %s, %s%s%s)`", entry->name, on->terminals[0],
+                  on->terminals[1], on->terminals[2], on->terminal_count > 3 ? ", " : "",
                   on->terminal_count > 3 ? on->terminals[3] : "");
     touch_both(x, at);
 }
@@ -64,7 +67,8 @@ void anb__refuse_data(anb__expander *x, const anb__item *item, anb__span span, u
         anb__error(x->report, span, "node-count", "the file has %lu port%s, so it cannot lie on %lu nodes",
                    (unsigned long)item->count, item->count == 1 ? "" : "s", (unsigned long)count);
     else
-        anb__error(x->report, item->span, "not-yet", "`touchstone(...)` cannot be read yet: data of files come in a later version");
+        anb__error(x->report, item->span, "not-yet",
+                   "`touchstone(...)` cannot be read yet: data of files come in a later version");
 }
 
 static void place_data(anb__expander *x, const anb__item *item, const spot *at) {
@@ -80,7 +84,8 @@ static void place_network(anb__expander *x, const anb__item *item, const spot *a
 
 /* ---- composites -------------------------------------------------------------------------- */
 
-static void place_child(anb__expander *x, const anb__item *child, uint32_t left, uint32_t right, bool to_ground) {
+static void place_child(anb__expander *x, const anb__item *child, uint32_t left, uint32_t right,
+                        bool to_ground) {
     anb__place_item(x, child, child->span, left, right, to_ground);
 }
 
@@ -145,10 +150,12 @@ static place_function *const placers[] = {
 };
 
 /* Networks count their level themselves. */
-static bool is_level(const anb__item *item) { return item->kind > ANB__ITEM_PART && item->kind != ANB__ITEM_NETWORK; }
+static bool is_level(const anb__item *item) {
+    return item->kind > ANB__ITEM_PART && item->kind != ANB__ITEM_NETWORK;
+}
 
-void anb__place_item(anb__expander *x, const anb__item *item, anb__span span, uint32_t left,
-                     uint32_t right, bool to_ground) {
+void anb__place_item(anb__expander *x, const anb__item *item, anb__span span, uint32_t left, uint32_t right,
+                     bool to_ground) {
     spot at = {span, left, right, to_ground, x->own};
     x->own = NULL;
     if (x->halted || !anb__count_round(x, span) || !anb__enter(x, span)) return;

@@ -21,9 +21,10 @@ static void add_terminal(anb__expander *x, const anb__tree *tree, const anb__tre
     if (!anb__node_of(x, nodes ? nodes : name, &node) || !anb__indexed_name(x, name, &base, &full)) return;
     for (uint32_t i = 0; i < region->port_count; i++)
         if (region->ports[i].name == full) {
-            anb__add_note(x->report,
-                          anb__error(x->report, name->span, "defined-twice", "there are two ports `%s`", full->text),
-                          region->ports[i].span, "this is the first");
+            anb__add_note(
+                x->report,
+                anb__error(x->report, name->span, "defined-twice", "there are two ports `%s`", full->text),
+                region->ports[i].span, "this is the first");
             return;
         }
     region->ports = anb__room(&x->scratch, region->ports, region->port_count, &region->port_capacity,
@@ -48,7 +49,8 @@ static bool port_impedance(anb__expander *x, const anb__tree *tree, anb__complex
     anb__quantity q;
     *z = anb__cx(50, 0);
     if (!impedance) {
-        anb__diagnostic *d = anb__error(x->report, tree->span, "missing-impedance", "a port needs its impedance");
+        anb__diagnostic *d = anb__error(x->report, tree->span, "missing-impedance",
+                                        "a port needs its impedance");
         anb__add_hint(x->report, d, "write `%s: 50 ohm`", anb__quote(x, tree->span));
         return false;
     }
@@ -66,13 +68,15 @@ static bool port_impedance(anb__expander *x, const anb__tree *tree, anb__complex
         *z = q.value;
         return true;
     }
-    anb__error(x->report, impedance->span, "not-positive", "the real part of a port's impedance has to be above zero; that of `%s` is not",
+    anb__error(x->report, impedance->span, "not-positive",
+               "the real part of a port's impedance has to be above zero; that of `%s` is not",
                anb__quote(x, impedance->span));
     return false;
 }
 
 /* The two ends; false where they are not known. */
-static bool port_ends(anb__expander *x, const anb__tree *tree, const anb__tree *name, uint32_t *plus, uint32_t *minus) {
+static bool port_ends(anb__expander *x, const anb__tree *tree, const anb__tree *name, uint32_t *plus,
+                      uint32_t *minus) {
     const anb__tree *nodes = nodes_of(tree);
     *minus = 0;
     if (!anb__node_of(x, nodes ? nodes : name, plus)) return false;
@@ -84,7 +88,8 @@ static bool claim_port(anb__expander *x, const anb__tree *name, const anb__name 
     if (!anb__indexed_name(x, name, &base, full)) return false;
     anb__symbol *symbol = anb__symbol_get(&x->symbols, ANB__PORT_SPACE, *full);
     if (symbol->live) {
-        anb__diagnostic *d = anb__error(x->report, name->span, "defined-twice", "there are two ports `%s`", (*full)->text);
+        anb__diagnostic *d = anb__error(x->report, name->span, "defined-twice", "there are two ports `%s`",
+                                        (*full)->text);
         anb__add_note(x->report, d, symbol->span, "this is the first");
         return false;
     }
@@ -149,10 +154,11 @@ static void explain_untouched(anb__expander *x, anb__diagnostic *d, const char *
 
 static void check_port(anb__expander *x, const anb__port *port) {
     if (anb__root_of(x, port->plus) == anb__root_of(x, port->minus)) {
-        anb__error(x->report, port->span, "shorted-port", "both ends of the port `%s` are one node", port->name);
+        anb__error(x->report, port->span, "shorted-port", "both ends of the port `%s` are one node",
+                   port->name);
     } else if (is_untouched(x, port->plus) || is_untouched(x, port->minus)) {
-        anb__diagnostic *d =
-            anb__error(x->report, port->span, "untouched-port", "nothing touches the port `%s`", port->name);
+        anb__diagnostic *d = anb__error(x->report, port->span, "untouched-port",
+                                        "nothing touches the port `%s`", port->name);
         explain_untouched(x, d, port->name);
     }
 }

@@ -55,7 +55,8 @@ typedef struct list {
 static void push(anb__arena *arena, list *l, anb__term *term) {
     if (l->count == l->capacity) {
         uint32_t capacity = l->capacity ? 2 * l->capacity : 16;
-        l->items = anb__arena_grow(arena, l->items, l->capacity * sizeof *l->items, capacity * sizeof *l->items);
+        l->items = anb__arena_grow(arena, l->items, l->capacity * sizeof *l->items,
+                                   capacity * sizeof *l->items);
         l->capacity = capacity;
     }
     l->items[l->count++] = term;

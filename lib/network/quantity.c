@@ -18,7 +18,7 @@ static void unpack(anb__dimension d, int out[DIMENSIONS]) {
 static bool pack(const int e[DIMENSIONS], anb__scale scale, anb__dimension *out) {
     for (int i = 0; i < DIMENSIONS; i++)
         if (e[i] > LARGEST_EXPONENT || e[i] < -LARGEST_EXPONENT) return false;
-    *out = (anb__dimension){(int8_t)e[0], (int8_t)e[1], (int8_t)e[2], (int8_t)e[3],
+    *out = (anb__dimension){(int8_t)e[0], (int8_t)e[1], (int8_t)e[2],  (int8_t)e[3],
                             (int8_t)e[4], (int8_t)e[5], (uint8_t)scale};
     return true;
 }

@@ -19,8 +19,9 @@ static void refer(anb__expander *x, const anb__tree *tree, char shape) {
     if (tree->kind == ANB__TREE_ERROR) return;
     if (base->kind != ANB__TREE_NAME && !(shape == 'p' && tree->kind == ANB__TREE_NUMBER)) {
         anb__error(x->report, tree->span, "wrong-reference", "`%s` is no %s", anb__quote(x, tree->span),
-                   shape == 'p' ? "port: a port is given by its name or number"
-                   : shape == 'l' ? "label of a part" : "node or label");
+                   shape == 'p'   ? "port: a port is given by its name or number"
+                   : shape == 'l' ? "label of a part"
+                                  : "node or label");
         return;
     }
     if (base->kind == ANB__TREE_NAME && !anb__path_of(x, tree, &reference->path, &reference->length)) return;
@@ -39,8 +40,9 @@ static void report_reference(anb__expander *x, const anb__reference *r) {
     const char *quote = anb__quote(x, r->tree->span);
     uint32_t space = r->shape == 'p' ? ANB__PORT_SPACE : 0;
     if (x->incomplete) return;
-    anb__diagnostic *d = anb__error(x->report, r->tree->span, "undefined-name", "there is no %s `%s`", what, quote);
-    anb__hint_nearest(x, d, quote, anb__symbol_nearest(&x->symbols, space, quote, is_live, &r->shape));
+    anb__diagnostic *d = anb__error(x->report, r->tree->span, "undefined-name", "there is no %s `%s`", what,
+                                    quote);
+    anb__hint_nearest(x, d, quote, anb__near(x, space, quote, is_live, &r->shape));
 }
 
 static void resolve_number(anb__expander *x, const anb__reference *r) {
@@ -48,8 +50,8 @@ static void resolve_number(anb__expander *x, const anb__reference *r) {
     if (r->tree->unit || number != rint(number) || number < 1 || number > x->port_count) {
         if (!x->incomplete)
             anb__error(x->report, r->tree->span, "undefined-name",
-                       "there is no port number `%s`: there are %lu ports, counted from 1", anb__quote(x, r->tree->span),
-                       (unsigned long)x->port_count);
+                       "there is no port number `%s`: there are %lu ports, counted from 1",
+                       anb__quote(x, r->tree->span), (unsigned long)x->port_count);
     } else if (r->drive != UINT32_MAX) {
         x->network->drives[r->drive].port = (uint32_t)number - 1;
     }
@@ -62,7 +64,9 @@ void anb__resolve_references(anb__expander *x) {
             continue;
         }
         uint32_t space = r->shape == 'p' ? ANB__PORT_SPACE : 0;
-        const anb__symbol *symbol = r->shape == 'p' && r->length > 1 ? NULL : anb__follow(x, space, r->path, r->length);
+        const anb__symbol *symbol = r->shape == 'p' && r->length > 1
+                                        ? NULL
+                                        : anb__follow(x, space, r->path, r->length);
         if (!symbol || !is_live(symbol, &r->shape)) report_reference(x, r);
         else if (r->drive != UINT32_MAX) x->network->drives[r->drive].port = symbol->node;
     }
@@ -82,7 +86,8 @@ static bool check_shape(anb__expander *x, const anb__tree *call, const anb__meas
         return false;
     }
     if (given == wanted || (more && given > wanted)) return true;
-    anb__error(x->report, call->span, "argument-count", "the measure is written `%s(%s)`", entry->name, entry->usage);
+    anb__error(x->report, call->span, "argument-count", "the measure is written `%s(%s)`", entry->name,
+               entry->usage);
     return false;
 }
 
@@ -120,7 +125,8 @@ static bool check_measure(anb__expander *x, const anb__tree *tree, anb__quantity
     x->measuring = false;
     if (!known) return false;
     if (!(q->marks & ANB__IS_MEASURED)) {
-        anb__error(x->report, tree->span, "no-measure", "`%s` holds no measure to be required", anb__quote(x, tree->span));
+        anb__error(x->report, tree->span, "no-measure", "`%s` holds no measure to be required",
+                   anb__quote(x, tree->span));
         return false;
     }
     if (!(q->marks & ANB__MAY_BE_COMPLEX)) return true;
@@ -152,7 +158,8 @@ static void check_limit(anb__expander *x, const anb__tree *limit, const anb__qua
 
 static void check_over(anb__expander *x, const anb__tree *over) {
     anb__quantity bounds[2];
-    if (!anb__wanted_range(x, over->first, "the range of a `require`", anb__hertz, ANB__NO_TUNE, bounds)) return;
+    if (!anb__wanted_range(x, over->first, "the range of a `require`", anb__hertz, ANB__NO_TUNE, bounds))
+        return;
     if (bounds[0].value.re < 0)
         anb__error(x->report, over->first->span, "negative-frequency", "a frequency cannot be negative");
     else in_order(x, over->first, bounds);
@@ -165,9 +172,11 @@ static void check_clause(anb__expander *x, const anb__tree *clause, bool *placed
         check_over(x, clause);
     } else if (clause->kind == ANB__TREE_AT_FREQUENCY) {
         *placed = true;
-        if (anb__wanted(x, clause->first, "the frequency of a `require`", anb__hertz, ANB__FIXED | ANB__NO_TUNE, &q) &&
+        if (anb__wanted(x, clause->first, "the frequency of a `require`", anb__hertz,
+                        ANB__FIXED | ANB__NO_TUNE, &q) &&
             q.value.re < 0)
-            anb__error(x->report, clause->first->span, "negative-frequency", "a frequency cannot be negative");
+            anb__error(x->report, clause->first->span, "negative-frequency",
+                       "a frequency cannot be negative");
     } else if (clause->kind == ANB__TREE_WEIGHT) {
         if (anb__wanted(x, clause->first, "a weight", anb__plain, ANB__FIXED, &q) && q.value.re <= 0)
             anb__error(x->report, clause->first->span, "not-positive", "a weight has to be above zero");
@@ -181,7 +190,8 @@ void anb__require_statement(anb__expander *x, const anb__tree *tree) {
     if (!limit) return; /* reported by the parser */
     bool known = check_measure(x, tree->first, &measure);
     check_limit(x, limit, &measure, known);
-    for (const anb__tree *clause = limit->next; clause; clause = clause->next) check_clause(x, clause, &placed);
+    for (const anb__tree *clause = limit->next; clause; clause = clause->next)
+        check_clause(x, clause, &placed);
     if (!placed) x->network->needs_sweep = true;
     keep(x, &x->network->requirements, tree);
 }
@@ -189,27 +199,32 @@ void anb__require_statement(anb__expander *x, const anb__tree *tree) {
 /* ---- drive --------------------------------------------------------------------------------------- */
 
 void anb__drive_statement(anb__expander *x, const anb__tree *tree) {
-    const anb__tree *port = tree->first, *power = port ? port->next : NULL, *phase = power ? power->next : NULL;
+    const anb__tree *port = tree->first, *power = port ? port->next : NULL,
+                    *phase = power ? power->next : NULL;
     anb__quantity watt = {0}, angle = {0};
     if (!power) return; /* reported by the parser */
-    bool known = anb__wanted(x, power, "the power of a `drive`", anb__watt, ANB__NO_FREQUENCY | ANB__NO_COMPLEX, &watt);
+    bool known = anb__wanted(x, power, "the power of a `drive`", anb__watt,
+                             ANB__NO_FREQUENCY | ANB__NO_COMPLEX, &watt);
     if (known && watt.value.re < 0) {
         anb__error(x->report, power->span, "negative", "the power of a `drive` cannot be negative");
     }
-    if (phase) anb__wanted(x, phase, "the phase of a `drive`", anb__angle, ANB__NO_FREQUENCY | ANB__NO_COMPLEX, &angle);
+    if (phase)
+        anb__wanted(x, phase, "the phase of a `drive`", anb__angle, ANB__NO_FREQUENCY | ANB__NO_COMPLEX,
+                    &angle);
     anb__reference **before = x->references_end;
     refer(x, port, 'p');
     if (x->references_end == before) return;
     (*before)->drive = x->network->drive_count;
     x->network->drives = anb__room(&x->network->arena, x->network->drives, x->network->drive_count,
                                    &x->drive_capacity, sizeof *x->network->drives);
-    x->network->drives[x->network->drive_count++] =
-        (anb__drive){.watt = watt.value.re, .phase_turns = angle.value.re, .span = tree->span};
+    x->network->drives[x->network->drive_count++] = (anb__drive){
+        .watt = watt.value.re, .phase_turns = angle.value.re, .span = tree->span};
 }
 
 /* ---- tune --------------------------------------------------------------------------------------------- */
 
-static void check_within(anb__expander *x, const anb__tree *rule, const anb__tree *start, const anb__quantity *q) {
+static void check_within(anb__expander *x, const anb__tree *rule, const anb__tree *start,
+                         const anb__quantity *q) {
     anb__quantity bounds[2];
     if (!anb__wanted_range(x, rule->first, "the range of a `tune`", q->dimension, ANB__NO_TUNE, bounds) ||
         !in_order(x, rule->first, bounds))
@@ -219,14 +234,17 @@ static void check_within(anb__expander *x, const anb__tree *rule, const anb__tre
                    anb__quote(x, start->span), anb__quote(x, rule->first->span));
 }
 
-static void check_series(anb__expander *x, const anb__tree *rule, const anb__tree *start, const anb__quantity *q) {
+static void check_series(anb__expander *x, const anb__tree *rule, const anb__tree *start,
+                         const anb__quantity *q) {
     int per_decade;
     const anb__tree *name = rule->first;
     if (name->kind == ANB__TREE_NAME && !anb__preferred_series(name->name->text, &per_decade))
         anb__error(x->report, name->span, "unknown-series",
-                   "`%s` is no series of preferred values: there are E3, E6, E12, E24, E48, E96 and E192", name->name->text);
+                   "`%s` is no series of preferred values: there are E3, E6, E12, E24, E48, E96 and E192",
+                   name->name->text);
     if (q->value.re <= 0)
-        anb__error(x->report, start->span, "not-positive", "preferred values are above zero, so the start has to be");
+        anb__error(x->report, start->span, "not-positive",
+                   "preferred values are above zero, so the start has to be");
 }
 
 static void check_from(anb__expander *x, const anb__tree *rule, const anb__quantity *q) {
@@ -242,7 +260,8 @@ static void check_from(anb__expander *x, const anb__tree *rule, const anb__quant
     for (uint32_t i = 0; i < list.count; i++) {
         anb__quantity element = list.elements[i].quantity;
         if (list.elements[i].kind == ANB__VALUE_QUANTITY)
-            anb__check_wanted(x, tree, "a value of this list", q->dimension, ANB__FIXED | ANB__NO_TUNE, &element);
+            anb__check_wanted(x, tree, "a value of this list", q->dimension, ANB__FIXED | ANB__NO_TUNE,
+                              &element);
         else if (list.elements[i].kind != ANB__VALUE_POISON)
             anb__error(x->report, tree->span, "not-a-number", "`from` takes a list of numbers");
         if (written) tree = tree->next;
@@ -282,7 +301,8 @@ void anb__tune_statement(anb__expander *x, const anb__tree *tree) {
     keep(x, &x->network->tunes, tree);
 }
 
-/* ---- cases ------------------------------------------------------------------------------------------------ */
+/* ---- cases ------------------------------------------------------------------------------------------------
+ */
 
 static bool range_cases(anb__expander *x, const anb__tree *range, const anb__value *value, double *count,
                         anb__value *first) {
@@ -342,6 +362,7 @@ void anb__cases_statement(anb__expander *x, const anb__tree *tree) {
     anb__value value = first_case(x, tree);
     const anb__tree *with = anb__replacement_of(x, tree->name);
     if (with) value = anb__evaluate(x, with);
+    else if (value.kind != ANB__VALUE_POISON) anb__list_case(x, tree);
     anb__define(x, tree->name, tree->name_span, &value);
     keep(x, &x->network->cases, tree);
 }

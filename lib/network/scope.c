@@ -36,11 +36,14 @@ anb__definition *anb__find_definition(const anb__expander *x, const anb__name *n
 
 /* ---- giving a meaning --------------------------------------------------------------- */
 
-static void report_two_kinds(anb__expander *x, const anb__symbol *symbol, anb__symbol_kind kind, anb__span span) {
+static void report_two_kinds(anb__expander *x, const anb__symbol *symbol, anb__symbol_kind kind,
+                             anb__span span) {
     anb__diagnostic *d = anb__error(x->report, span, "two-kinds", "`%s` is %s, so it cannot be %s as well",
                                     symbol->name->text, kind_phrases[symbol->kind], kind_phrases[kind]);
     anb__add_note(x->report, d, symbol->span, "`%s` is %s here", symbol->name->text,
                   kind_phrases[symbol->kind]);
+    bool shape = symbol->kind == ANB__SYMBOL_NETWORK || symbol->kind == ANB__SYMBOL_OWN_PART;
+    if (shape && kind == ANB__SYMBOL_NODE) anb__add_hint(x->report, d, "write `%s(...)`", symbol->name->text);
 }
 
 bool anb__claim(anb__expander *x, anb__symbol *symbol, anb__symbol_kind kind, anb__span span) {
@@ -59,8 +62,8 @@ bool anb__claim(anb__expander *x, anb__symbol *symbol, anb__symbol_kind kind, an
 }
 
 static void report_twice(anb__expander *x, const anb__symbol *symbol, anb__span span) {
-    anb__diagnostic *d =
-        anb__error(x->report, span, "defined-twice", "`%s` is defined twice", symbol->name->text);
+    anb__diagnostic *d = anb__error(x->report, span, "defined-twice", "`%s` is defined twice",
+                                    symbol->name->text);
     anb__add_note(x->report, d, symbol->span, "`%s` is first defined here", symbol->name->text);
 }
 
@@ -98,9 +101,9 @@ static bool is_taken(anb__expander *x, const anb__tree *tree) {
 }
 
 static void report_shadow(anb__expander *x, const anb__symbol *symbol, const anb__tree *parameter) {
-    anb__diagnostic *d = anb__error(x->report, parameter->name_span, "defined-twice",
-                                    "the parameter `%s` would hide the value of this name: choose another name",
-                                    parameter->name->text);
+    anb__diagnostic *d = anb__error(
+        x->report, parameter->name_span, "defined-twice",
+        "the parameter `%s` would hide the value of this name: choose another name", parameter->name->text);
     anb__add_note(x->report, d, symbol->span, "`%s` is defined here", parameter->name->text);
 }
 
@@ -118,6 +121,11 @@ static void check_parameters(anb__expander *x, const anb__tree *parameters, bool
     }
 }
 
+bool anb__is_defined(const anb__expander *x, const anb__tree *tree) {
+    const anb__definition *definition = tree->name ? anb__find_definition(x, tree->name) : NULL;
+    return definition && definition->tree == tree;
+}
+
 void anb__define_shape(anb__expander *x, const anb__tree *tree, anb__symbol_kind kind) {
     if (!tree->name || !tree->first || is_taken(x, tree)) return;
     anb__symbol *symbol = anb__symbol_get(&x->symbols, 0, tree->name);
@@ -131,7 +139,8 @@ void anb__define_shape(anb__expander *x, const anb__tree *tree, anb__symbol_kind
     definition->tree = tree;
     definition->parameters = tree->first;
     definition->body = tree->first->next;
-    definition->broken = !definition->body || definition->body->kind == ANB__TREE_ERROR;
+    const anb__tree *body = definition->body; /* an empty one stands for one that could not be read */
+    definition->broken = !body || body->kind == ANB__TREE_ERROR || body->span.start == body->span.end;
     for (const anb__tree *p = tree->first->first; p; p = p->next) {
         definition->parameter_count++;
         if (p->kind != ANB__TREE_PARAMETER) definition->broken = true;
@@ -154,11 +163,12 @@ static bool is_usable_value(const anb__symbol *symbol, const void *user) {
 }
 
 static const char *nearest_value(anb__expander *x, const char *name) {
-    const char *best = anb__symbol_nearest(&x->symbols, x->region->space->id, name, is_usable_value, x);
+    const char *best = anb__near(x, x->region->space->id, name, is_usable_value, x);
     if (!x->frame) return best;
     const char *known[ANB__MOST_NAMES];
     unsigned count = 0;
-    for (const anb__tree *p = x->frame->definition->parameters->first; p && count < ANB__MOST_NAMES - 1; p = p->next)
+    for (const anb__tree *p = x->frame->definition->parameters->first; p && count < ANB__MOST_NAMES - 1;
+         p = p->next)
         known[count++] = p->name->text;
     if (best) known[count++] = best;
     return anb__nearest(name, known, count);
@@ -177,6 +187,7 @@ static const anb__tree *later_definition(const anb__tree *parent, const anb__nam
 }
 
 static void explain_undefined(anb__expander *x, anb__diagnostic *d, const anb__name *name) {
+    if (anb__is_tired(x)) return;
     bool inside = x->region->definition != NULL;
     const anb__symbol *outer = anb__symbol_find(&x->symbols, 0, name);
     const anb__tree *later = inside ? NULL : later_definition(x->root, name);
@@ -185,8 +196,7 @@ static void explain_undefined(anb__expander *x, anb__diagnostic *d, const anb__n
                       name->text);
     else if (later)
         anb__add_note(x->report, d, later->name_span, "it is defined here: a value stands before its use");
-    else
-        anb__hint_nearest(x, d, name->text, nearest_value(x, name->text));
+    else anb__hint_nearest(x, d, name->text, nearest_value(x, name->text));
 }
 
 bool anb__first_told(anb__expander *x, const anb__name *name) {
@@ -273,6 +283,7 @@ bool anb__indexed_name(anb__expander *x, const anb__tree *tree, const anb__name 
 anb__space *anb__new_space(anb__expander *x, anb__space *parent, const anb__name *label) {
     anb__space *space = anb__arena_take(&x->scratch, sizeof *space);
     space->id = ++x->space_count;
+    if (label) x->labelled_spaces++;
     space->parent = parent;
     space->label = label;
     space->reachable = parent->reachable && label;

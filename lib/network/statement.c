@@ -46,9 +46,7 @@ static void define_kind(anb__expander *x, const anb__tree *tree) {
 
 /* Those that stand in no `if` are defined before anything else, see expand.c. */
 static void define_network(anb__expander *x, const anb__tree *tree) {
-    for (const anb__definition *d = x->definitions; d; d = d->next)
-        if (d->tree == tree) return;
-    anb__define_shape(x, tree, ANB__SYMBOL_NETWORK);
+    if (!anb__is_defined(x, tree)) anb__define_shape(x, tree, ANB__SYMBOL_NETWORK);
 }
 
 /* ---- placing ----------------------------------------------------------------------------- */
@@ -75,13 +73,15 @@ static void forget_locals(anb__expander *x, uint32_t count) {
     while (x->local_count > count) x->locals[--x->local_count]->live = false;
 }
 
+#define LARGEST_WHOLE 9007199254740992.0 /* 2^53: beyond it, counting by one has no effect */
+
 static bool loop_range(anb__expander *x, const anb__tree *tree, double *low, double *high) {
     anb__quantity bounds[2];
     const anb__tree *range = tree->first;
     if (!anb__wanted_range(x, range, "the range of a loop", anb__plain, ANB__FIXED, bounds)) return false;
     *low = bounds[0].value.re;
     *high = bounds[1].value.re;
-    if (*low != rint(*low) || *high != rint(*high)) {
+    if (*low != rint(*low) || *high != rint(*high) || fabs(*low) > LARGEST_WHOLE) {
         anb__error(x->report, range->span, "not-whole", "a loop counts in whole numbers");
         return false;
     }
@@ -170,7 +170,8 @@ static void include(anb__expander *x, const anb__tree *tree) {
     }
     for (uint32_t i = 0; i < x->visited_count; i++)
         if (x->visited[i] == file) return;
-    x->visited = anb__room(&x->scratch, x->visited, x->visited_count, &x->visited_capacity, sizeof *x->visited);
+    x->visited = anb__room(&x->scratch, x->visited, x->visited_count, &x->visited_capacity,
+                           sizeof *x->visited);
     x->visited[x->visited_count++] = file;
     anb__statements(x, file);
 }
@@ -231,8 +232,9 @@ static bool may_stand_here(anb__expander *x, const anb__tree *tree, const struct
     if (inside && !(allowed & IN_NETWORK)) where = "a network";
     else if (x->loop_depth && !(allowed & IN_LOOP)) where = "a loop";
     if (!where) return true;
-    anb__error(x->report, head_of(x, tree->span), "wrong-place", "%s stands at the top level only, not in %s", name,
-               where);
+    if (x->lost) return false; /* perhaps it is a brace that is missing */
+    anb__error(x->report, head_of(x, tree->span), "wrong-place", "%s stands at the top level only, not in %s",
+               name, where);
     return false;
 }
 

@@ -39,7 +39,8 @@ static bool sweep_range(anb__expander *x, const anb__tree *range, double *low, d
     return false;
 }
 
-static void evenly(anb__expander *x, const anb__tree *rule, bool counts, bool known, double low, double high) {
+static void evenly(anb__expander *x, const anb__tree *rule, bool counts, bool known, double low,
+                   double high) {
     double count;
     if (!anb__wanted_whole(x, rule->first, "the number of points", 1, &count) || !known) return;
     if (count == 1 && high > low) {
@@ -51,7 +52,8 @@ static void evenly(anb__expander *x, const anb__tree *rule, bool counts, bool kn
     grid->low = low, grid->high = high, grid->count = (uint64_t)count;
 }
 
-static void stepwise(anb__expander *x, const anb__tree *rule, bool counts, bool known, double low, double high) {
+static void stepwise(anb__expander *x, const anb__tree *rule, bool counts, bool known, double low,
+                     double high) {
     anb__quantity step;
     if (!anb__wanted(x, rule->first, "the step of a sweep", anb__hertz, ANB__FIXED, &step)) return;
     if (step.value.re <= 0) {
@@ -67,17 +69,19 @@ static void stepwise(anb__expander *x, const anb__tree *rule, bool counts, bool 
 }
 
 /* ceil(n * decades) steps; a product that is whole but for its rounding counts as whole. */
-static void per_decade(anb__expander *x, const anb__tree *rule, const anb__tree *range, bool counts, bool known,
-                       double low, double high) {
+static void per_decade(anb__expander *x, const anb__tree *rule, const anb__tree *range, bool counts,
+                       bool known, double low, double high) {
     anb__quantity n;
     if (!anb__wanted(x, rule->first, "the number of points per decade", anb__plain, ANB__FIXED, &n)) return;
     if (n.value.re <= 0) {
-        anb__error(x->report, rule->first->span, "not-positive", "the number of points per decade has to be above 0");
+        anb__error(x->report, rule->first->span, "not-positive",
+                   "the number of points per decade has to be above 0");
         return;
     }
     if (!known) return;
     if (low <= 0) {
-        anb__error(x->report, end_of(range, 0)->span, "not-positive", "decades begin above 0 Hz: 0 has no logarithm");
+        anb__error(x->report, end_of(range, 0)->span, "not-positive",
+                   "decades begin above 0 Hz: 0 has no logarithm");
         return;
     }
     if (!counts) return;
@@ -110,7 +114,8 @@ static void take_frequencies(anb__expander *x, const anb__tree *tree, frequencie
     anb__value value = anb__evaluate(x, tree);
     if (value.kind == ANB__VALUE_LIST) {
         for (uint32_t i = 0; i < value.count; i++)
-            if (value.elements[i].kind == ANB__VALUE_QUANTITY) take_frequency(x, tree, value.elements[i].quantity, f);
+            if (value.elements[i].kind == ANB__VALUE_QUANTITY)
+                take_frequency(x, tree, value.elements[i].quantity, f);
     } else if (value.kind == ANB__VALUE_QUANTITY) {
         take_frequency(x, tree, value.quantity, f);
     } else if (value.kind != ANB__VALUE_POISON) {

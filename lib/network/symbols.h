@@ -36,17 +36,20 @@ typedef struct anb__symbol {
         anb__value *value;
         anb__definition *definition; /* NETWORK, OWN_PART */
     };
+    struct anb__symbol *older; /* of the same owner, or of those that are free */
 } anb__symbol;
 
 /* The name and the space stand beside the pointer, so that looking up seldom leaves the table. */
 typedef struct anb__symbol_slot {
     const anb__name *name;
     anb__symbol *symbol; /* NULL: free */
-    uint32_t space;
+    uint32_t space, hash;
 } anb__symbol_slot;
 
 typedef struct anb__symbols {
     anb__arena *arena;
+    anb__symbol *newest; /* of the space that is being filled */
+    anb__symbol *free;
     anb__symbol_slot *table; /* open addressing; `capacity` is a power of two */
     uint32_t capacity, count;
 } anb__symbols;
@@ -55,6 +58,9 @@ typedef struct anb__symbols {
 anb__symbol *anb__symbol_find(const anb__symbols *symbols, uint32_t space, const anb__name *name);
 /* The symbol; a new one has the kind NONE. */
 anb__symbol *anb__symbol_get(anb__symbols *symbols, uint32_t space, const anb__name *name);
+
+/* Forgets the symbols since `newest` was `before`, of a space that nobody will look into again. */
+void anb__symbols_forget(anb__symbols *symbols, anb__symbol *before);
 
 /* The name in the space that is nearest to `name` and for which `wanted` is true, or NULL. */
 const char *anb__symbol_nearest(const anb__symbols *symbols, uint32_t space, const char *name,

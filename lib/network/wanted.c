@@ -23,8 +23,8 @@ static void write_forms(const anb__argument_form *forms, unsigned count, char *t
     }
 }
 
-void anb__report_dimension(anb__expander *x, const anb__tree *tree, const anb__quantity *q,
-                           const char *what, const anb__argument_form *forms, unsigned form_count) {
+void anb__report_dimension(anb__expander *x, const anb__tree *tree, const anb__quantity *q, const char *what,
+                           const anb__argument_form *forms, unsigned form_count) {
     char expected[320], given[96], unit[96];
     write_forms(forms, form_count, expected, sizeof expected);
     const char *quote = anb__quote(x, tree->span);
@@ -33,20 +33,22 @@ void anb__report_dimension(anb__expander *x, const anb__tree *tree, const anb__q
                    anb__dimension_phrase(q->dimension, given, sizeof given), what, expected);
         return;
     }
-    anb__diagnostic *d = anb__error(x->report, tree->span, "missing-unit", "`%s` has no unit: %s is %s", quote,
-                                    what, expected);
+    anb__diagnostic *d = anb__error(x->report, tree->span, "missing-unit", "`%s` has no unit: %s is %s",
+                                    quote, what, expected);
     const char *name = anb__dimension_name(forms[0].dimension, unit, sizeof unit);
     if (tree->kind == ANB__TREE_NUMBER)
-        anb__add_hint(x->report, d, "write `%s %s%s`", quote, name, forms[0].at == ANB__AT_MUST ? " @ 1 GHz" : "");
+        anb__add_hint(x->report, d, "write `%s %s%s`", quote, name,
+                      forms[0].at == ANB__AT_MUST ? " @ 1 GHz" : "");
 }
 
 static void refuse(anb__expander *x, const anb__tree *tree, const char *code, const char *what,
                    const char *why) {
-    anb__error(x->report, tree->span, code, "`%s` %s, which %s may not", anb__quote(x, tree->span), why, what);
+    anb__error(x->report, tree->span, code, "`%s` %s, which %s may not", anb__quote(x, tree->span), why,
+               what);
 }
 
-bool anb__check_wanted(anb__expander *x, const anb__tree *tree, const char *what,
-                       anb__dimension dimension, unsigned refused, anb__quantity *q) {
+bool anb__check_wanted(anb__expander *x, const anb__tree *tree, const char *what, anb__dimension dimension,
+                       unsigned refused, anb__quantity *q) {
     if (anb__same_dimension(dimension, anb__watt) && q->dimension.scale == ANB__SCALE_DBM && !q->term)
         *q = anb__dbm_to_watt(q);
     if (!anb__same_dimension(q->dimension, dimension)) {
@@ -62,8 +64,7 @@ bool anb__check_wanted(anb__expander *x, const anb__tree *tree, const char *what
         refuse(x, tree, "tune-here", what, "depends on a `tune` name");
     else if ((refused & ANB__NO_COMPLEX) && !q->term && q->value.im != 0)
         refuse(x, tree, "complex-here", what, "is complex");
-    else
-        return true;
+    else return true;
     return false;
 }
 
@@ -72,8 +73,7 @@ bool anb__wanted(anb__expander *x, const anb__tree *tree, const char *what, anb_
     return anb__operand(x, tree, out) && anb__check_wanted(x, tree, what, dimension, refused, out);
 }
 
-bool anb__wanted_whole(anb__expander *x, const anb__tree *tree, const char *what, double least,
-                       double *out) {
+bool anb__wanted_whole(anb__expander *x, const anb__tree *tree, const char *what, double least, double *out) {
     anb__quantity q;
     if (!anb__wanted(x, tree, what, anb__plain, ANB__FIXED, &q)) return false;
     *out = q.value.re;
@@ -88,13 +88,13 @@ bool anb__wanted_whole(anb__expander *x, const anb__tree *tree, const char *what
     return false;
 }
 
-bool anb__wanted_range(anb__expander *x, const anb__tree *tree, const char *what,
-                       anb__dimension dimension, unsigned refused, anb__quantity bounds[2]) {
+bool anb__wanted_range(anb__expander *x, const anb__tree *tree, const char *what, anb__dimension dimension,
+                       unsigned refused, anb__quantity bounds[2]) {
     anb__value value = anb__evaluate(x, tree);
     if (value.kind == ANB__VALUE_POISON) return false;
     if (value.kind != ANB__VALUE_RANGE) {
-        anb__diagnostic *d = anb__error(x->report, tree->span, "not-a-range", "%s is a range; `%s` is %s", what,
-                                        anb__quote(x, tree->span), anb__value_phrase(x, &value));
+        anb__diagnostic *d = anb__error(x->report, tree->span, "not-a-range", "%s is a range; `%s` is %s",
+                                        what, anb__quote(x, tree->span), anb__value_phrase(x, &value));
         anb__add_hint(x->report, d, "a range is written `low .. high`");
         return false;
     }

@@ -45,6 +45,11 @@ const char *anb__value_phrase(anb__expander *x, const anb__value *value) {
     }
 }
 
+const char *anb__near(const anb__expander *x, uint32_t space, const char *name,
+                      bool (*wanted)(const anb__symbol *symbol, const void *user), const void *user) {
+    return anb__is_tired(x) ? NULL : anb__symbol_nearest(&x->symbols, space, name, wanted, user);
+}
+
 void anb__hint_nearest(anb__expander *x, anb__diagnostic *d, const char *name, const char *nearest) {
     if (nearest && strlen(name) > 1) anb__add_hint(x->report, d, "did you mean `%s`?", nearest);
 }
@@ -115,4 +120,6 @@ static bool lost_in(const anb__expander *x, const anb__tree *parent, const anb__
     return false;
 }
 
-bool anb__maybe_defined(const anb__expander *x, const anb__name *name) { return lost_in(x, x->root, name); }
+bool anb__maybe_defined(const anb__expander *x, const anb__name *name) {
+    return x->lost && (anb__is_tired(x) || lost_in(x, x->root, name));
+}

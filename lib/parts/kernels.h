@@ -38,14 +38,14 @@ static inline void sine_cosine(anb__vec turns, anb__vec *sine, anb__vec *cosine)
     anb__ivec odd = parity != 0;
     anb__ivec back = anb__vabs(whole) == 2;
     anb__vec swapped_s = anb__select(odd, cos_x, sin_x), swapped_c = anb__select(odd, sin_x, cos_x);
-    anb__ivec sign = (anb__ivec)anb__all(-0.0);
+    anb__ivec sign = INT64_MIN + (anb__ivec){0};
     anb__ivec minus_s = (back | (whole == -1)) & sign, minus_c = (back | (whole == 1)) & sign;
     *sine = (anb__vec)((anb__ivec)swapped_s ^ minus_s);
     *cosine = (anb__vec)((anb__ivec)swapped_c ^ minus_c);
 }
 
-/* e^y - 1 for y <= 0, exact near 0 as well. */
-static inline anb__vec exponential_less_one(anb__vec y) {
+/* e^y for y <= 0, and e^y - 1, which is exact near 0 as well. */
+static inline anb__vec exponential(anb__vec y, anb__vec *less_one_out) {
     static const double p[] = {1.0 / 6227020800, 1.0 / 479001600, 1.0 / 39916800, 1.0 / 3628800, 1.0 / 362880,
                                1.0 / 40320,      1.0 / 5040,      1.0 / 720,      1.0 / 120,     1.0 / 24,
                                1.0 / 6,          0.5};
@@ -59,7 +59,8 @@ static inline anb__vec exponential_less_one(anb__vec y) {
     /* 2^k by adding k to the exponent: k + 1.5*2^52 has k in its low bits */
     anb__ivec bits = (anb__ivec)(k + 6755399441055744.0) - (anb__ivec)anb__all(6755399441055744.0);
     anb__vec scale = (anb__vec)((bits + 1023) << 52);
-    return anb__fma(scale, less_one, scale - 1);
+    *less_one_out = anb__fma(scale, less_one, scale - 1);
+    return anb__fma(scale, less_one, scale);
 }
 
 /* ---- waves ---------------------------------------------------------------------------- */
@@ -96,6 +97,14 @@ static inline void store_imaginary(double *values, uint32_t groups, uint32_t val
     anb__store(to + ANB__LANES, im);
 }
 
+/* Near a multiple of half a wave coth x and 1/sinh x are large and nearly opposite, and where both ends of a line meet they
+ * cancel before any pivot could tell: such lanes are left to the pivoted way, by values that are no numbers. */
+#define LEAST_SINH 1e-4
+
+static inline anb__vec unless_small(anb__vec value, anb__vec square) {
+    return anb__select(square < LEAST_SINH * LEAST_SINH, anb__all(__builtin_nan("")), value);
+}
+
 static void lossless_wave(const anb__wave_values *w, const frequencies *f, uint32_t groups, double *values) {
     for (size_t lane = 0; lane < (size_t)groups * ANB__LANES; lane += ANB__WIDTH) {
         anb__vec sine, cosine;
@@ -103,7 +112,7 @@ static void lossless_wave(const anb__wave_values *w, const frequencies *f, uint3
         if (w->value[ANB__TANH] != ANB__NO_VALUE)
             store_imaginary(values, groups, w->value[ANB__TANH], lane, sine / cosine);
         if (w->value[ANB__COTH] == ANB__NO_VALUE && w->value[ANB__CSCH] == ANB__NO_VALUE) continue;
-        anb__vec csch = -1 / sine;
+        anb__vec csch = -1 / unless_small(sine, sine * sine);
         if (w->value[ANB__COTH] != ANB__NO_VALUE)
             store_imaginary(values, groups, w->value[ANB__COTH], lane, cosine * csch);
         if (w->value[ANB__CSCH] != ANB__NO_VALUE) store_imaginary(values, groups, w->value[ANB__CSCH], lane, csch);
@@ -116,12 +125,12 @@ typedef struct hyperbolic {
 } hyperbolic;
 
 static inline hyperbolic hyperbolic_of(anb__vec loss, anb__vec turns) {
-    anb__vec sine, cosine;
+    anb__vec sine, cosine, fall;
     sine_cosine(turns, &sine, &cosine);
-    anb__vec fall = exponential_less_one(-anb__vabs(loss));
+    anb__vec unit = exponential(-anb__vabs(loss), &fall);
     anb__vec s = fall * (2 + fall) * -0.5, c = 1 - s;
     s = anb__select(loss < 0, -s, s);
-    return (hyperbolic){s * cosine, c * sine, c * cosine, s * sine, 1 + fall};
+    return (hyperbolic){s * cosine, c * sine, c * cosine, s * sine, unit};
 }
 
 /* a/b */
@@ -142,6 +151,7 @@ static void lossy_wave(const anb__wave_values *w, const frequencies *f, uint32_t
             divide(h.sinh_re, h.sinh_im, h.cosh_re, h.cosh_im, &re, &im);
             store_value(values, groups, w->value[ANB__TANH], lane, re, im);
         }
+        h.sinh_re = unless_small(h.sinh_re, anb__fma(h.sinh_re, h.sinh_re, h.sinh_im * h.sinh_im));
         if (w->value[ANB__COTH] != ANB__NO_VALUE) {
             divide(h.cosh_re, h.cosh_im, h.sinh_re, h.sinh_im, &re, &im);
             store_value(values, groups, w->value[ANB__COTH], lane, re, im);
@@ -169,6 +179,7 @@ static void constants_line(const anb__line_values *line, const frequencies *f, u
         anb__vec turns = x_im * (1 / TWO_PI), y0_re, y0_im;
         divide(anb__all(m->g), wc, x_re, x_im, &y0_re, &y0_im);
         hyperbolic h = hyperbolic_of(x_re, turns - anb__vround(turns));
+        h.sinh_re = unless_small(h.sinh_re, anb__fma(h.sinh_re, h.sinh_re, h.sinh_im * h.sinh_im));
         divide(h.cosh_re, h.cosh_im, h.sinh_re, h.sinh_im, &re, &im);
         store_value(values, groups, line->value, lane, anb__fnma(im, y0_im, re * y0_re),
                     anb__fma(im, y0_re, re * y0_im));

@@ -123,7 +123,8 @@ const anb__family anb__family_inductor = {inductor_equations, inductor_stamps, t
 
 /* ---- capacitor ------------------------------------------------------------------- */
 
-/* The complex capacitance c (1 - j loss_tangent), and 1 + j/q for a Q that is the same everywhere. */
+/* The complex capacitance c' = c (1 - j loss_tangent), and for a Q that is the same everywhere, a series
+ * resistance 1/(w c q), the factor 1 + j (c'/c)/q that 1/(s c') becomes by it. */
 static bool capacitor_values(const anb__placed *part, const anb__point *point, const anb__series *c,
                              anb__series *lossy, anb__series *quality) {
     anb__series tangent, q, unity = anb__series_constant(one);
@@ -138,6 +139,7 @@ static bool capacitor_values(const anb__placed *part, const anb__point *point, c
     if (!argument || argument->has_at) return true;
     if (!anb__series_div(&unity, &q, &q)) return false;
     q = anb__series_scale(&q, anb__cx(0, 1));
+    q = anb__series_mul(&q, &tangent);
     *quality = anb__series_add(&unity, &q);
     return true;
 }
@@ -186,7 +188,8 @@ static void capacitor_stamps(const anb__placed *part, anb__stamper *stamper) {
     if (q && q->has_at) r += 1 / (TWO_PI * q->at_hz * c * q->value.re);
     if (anb__has(part, ANB__ARG_SRF)) esl += resonant_with(c, anb__constant(part, ANB__ARG_SRF, 0).re);
     anb__complex lossy = anb__cx(c, -c * tangent);
-    anb__complex quality = anb__cx(1, q && !q->has_at ? 1 / q->value.re : 0);
+    double share = q && !q->has_at ? 1 / q->value.re : 0;
+    anb__complex quality = anb__cx(1 + tangent * share, share);
     if (r == 0 && esl == 0) {
         anb__stamp_terms(stamper, 0, 0, zero, anb__cdiv(lossy, quality), zero);
         return;

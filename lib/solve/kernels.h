@@ -1,13 +1,15 @@
 /* The plan's operations, all lanes of a block at each. Included by kernels_plain.c, kernels_avx2.c and
  * kernels_avx512.c, each compiled for its instruction set.
  *
- * The guard. A diagonal element loses digits when what is left of it is small beside what it was before one of
- * its updates, and a pivot that is small beside its column makes later ones large. So each lane sums,
- * over all pivots D,
- *     (sum of |a|^2 over the pivot's column + sum of |former values of D itself|^2) / |D|^2,
- * which is about the square of the largest factor by which rounding errors grow. Offdiagonal elements need no
- * look: |l_i a_j| is the geometric mean of the two diagonal updates. A sum keeps what is not a number, as the maximum
- * would not.
+ * The guard is a running estimate of the rounding errors. A diagonal element D carries in its *history* the sum of
+ *     |D|^2 as it was before each of its updates, and |l|^4 times the history of the pivot that updates it,
+ * about the square of its absolute error in units of the last place: it grows where little is left of
+ * large numbers, and an error is handed on with the square of the multiplier l, so that losses one after another
+ * multiply. Offdiagonal elements need no look: their updates are geometric means of the diagonal ones'. At
+ * each pivot
+ *     growth^2 = (history of D + sum of |a|^2 over its column) / |D|^2,
+ * and the lane's measure is the sum of growth^4 over all pivots: it is led by the largest, and it keeps
+ * what is not a number, as a maximum would not.
  */
 #include "base/lanes.h"
 #include "solve/plan_code.h"
@@ -52,7 +54,10 @@ ALWAYS_INLINE anb__vec plus_square(anb__vec sum, cell a) {
     return anb__fma(a.im, a.im, anb__fma(a.re, a.re, sum));
 }
 
-/* 1/a and 1/|a|^2 by one division. Pivots are admittances and impedances; their squares do not overflow. */
+ALWAYS_INLINE anb__vec square_of(cell a) { return anb__fma(a.im, a.im, a.re * a.re); }
+
+/* 1/a and 1/|a|^2 by one division. Pivots are admittances and impedances; their squares do not overflow. An
+ * infinite one makes both not a number, for the guard to see. */
 typedef struct reciprocal {
     cell of;
     anb__vec square;
@@ -60,7 +65,8 @@ typedef struct reciprocal {
 
 ALWAYS_INLINE reciprocal invert(cell a) {
     anb__vec square = 1 / anb__fma(a.re, a.re, a.im * a.im);
-    return (reciprocal){{a.re * square, -a.im * square}, square};
+    cell of = {a.re * square, -a.im * square};
+    return (reciprocal){of, anb__fma(of.re + of.im, anb__all(0), square)};
 }
 
 /* ---- addresses ------------------------------------------------------------------------------------- */
@@ -80,8 +86,17 @@ ALWAYS_INLINE step step_of(uint32_t k) {
     return (step){(size_t)group * ANB__GROUP + part, (size_t)group * ANB__LANES + part};
 }
 
-ALWAYS_INLINE void add_growth(const run *x, step s, anb__vec sum, anb__vec inverse_square) {
-    anb__store(x->growth + s.half, anb__fma(sum, inverse_square, anb__load(x->growth + s.half)));
+/* sum + growth^4 of a pivot, `squares` being its history and column */
+ALWAYS_INLINE anb__vec plus_growth(anb__vec sum, anb__vec squares, anb__vec inverse_square) {
+    const anb__vec growth_square = squares * inverse_square;
+    return anb__fma(growth_square, growth_square, sum);
+}
+ALWAYS_INLINE void add_growth(const run *x, step s, anb__vec squares, anb__vec inverse_square) {
+    anb__store(x->growth + s.half, plus_growth(anb__load(x->growth + s.half), squares, inverse_square));
+}
+/* A pivot's history as one of its neighbours gets it; |l|^2 is |column| |row| / |pivot|^2. */
+ALWAYS_INLINE anb__vec handed_on(anb__vec past, anb__vec history, anb__vec column, anb__vec row, anb__vec inverse_square) {
+    return anb__fma((column * inverse_square) * (row * inverse_square), history, past);
 }
 
 /* ---- one unknown ---------------------------------------------------------------------------------------- */
@@ -112,29 +127,30 @@ ALWAYS_INLINE const uint32_t *read_elimination(const run *x, const uint32_t *op,
     return op;
 }
 
-ALWAYS_INLINE void update_diagonal(double *past, step s, cell old) {
-    anb__store(past + s.half, plus_square(anb__load(past + s.half), old));
-}
-
 ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, const int d, const bool symmetric,
                                   const bool keep) {
     cell column[ANB__FIXED], row[ANB__FIXED], factor[ANB__FIXED];
-    reciprocal pivot = invert(get(e->pivot + s.at));
-    anb__vec growth = anb__load(e->own_history + s.half);
+    anb__vec below[ANB__FIXED], beside[ANB__FIXED]; /* squares */
+    const reciprocal pivot = invert(get(e->pivot + s.at));
+    const anb__vec past = anb__load(e->own_history + s.half);
+    anb__vec squares = past;
     for (int k = 0; k < d; k++) {
         column[k] = get(e->column[k] + s.at);
-        growth = plus_square(growth, column[k]);
         row[k] = symmetric ? column[k] : get(e->row[k] + s.at);
-        if (!symmetric) growth = plus_square(growth, row[k]);
+        below[k] = square_of(column[k]);
+        beside[k] = symmetric ? below[k] : square_of(row[k]);
+        squares += symmetric ? below[k] : below[k] + beside[k];
         factor[k] = times(column[k], pivot.of);
     }
-    add_growth(x, s, growth, pivot.square);
+    add_growth(x, s, squares, pivot.square);
     int n = 0;
     for (int i = 0; i < d; i++)
         for (int j = 0; j < (symmetric ? i + 1 : d); j++, n++) {
-            cell old = get(e->from[n] + s.at);
-            if (i == j) update_diagonal(e->history[i], s, old);
+            const cell old = get(e->from[n] + s.at);
             put(e->to[n] + s.at, less(old, factor[i], row[j]));
+            if (i != j) continue;
+            const anb__vec own = plus_square(anb__load(e->history[i] + s.half), old);
+            anb__store(e->history[i] + s.half, handed_on(own, past, below[i], beside[i], pivot.square));
         }
     if (!keep) return;
     put(e->pivot + s.at, pivot.of);
@@ -191,20 +207,20 @@ ALWAYS_INLINE void factor_small(small *b, const int m, const bool symmetric) {
     for (int k = 0; k < m; k++) {
         reciprocal pivot = invert(b->a[k][k]);
         b->inverse[k] = pivot.of;
-        anb__vec sum = b->history[k];
         cell row[ANB__FIXED];
+        anb__vec squares = b->history[k];
         for (int i = k + 1; i < m; i++) {
             row[i] = symmetric ? b->a[i][k] : b->a[k][i];
-            sum = plus_square(sum, b->a[i][k]);
-            if (!symmetric) sum = plus_square(sum, row[i]);
+            const anb__vec below = square_of(b->a[i][k]), beside = symmetric ? below : square_of(row[i]);
+            squares += symmetric ? below : below + beside;
+            b->history[i] = plus_square(b->history[i], b->a[i][i]);
+            b->history[i] = handed_on(b->history[i], b->history[k], below, beside, pivot.square);
             b->a[i][k] = times(b->a[i][k], pivot.of);
             if (!symmetric) b->a[k][i] = times(row[i], pivot.of);
         }
-        b->growth = anb__fma(sum, pivot.square, b->growth);
-        for (int i = k + 1; i < m; i++) {
-            b->history[i] = plus_square(b->history[i], b->a[i][i]);
+        b->growth = plus_growth(b->growth, squares, pivot.square);
+        for (int i = k + 1; i < m; i++)
             for (int j = k + 1; j < (symmetric ? i + 1 : m); j++) b->a[i][j] = less(b->a[i][j], b->a[i][k], row[j]);
-        }
     }
 }
 

@@ -13,8 +13,8 @@ enum {
     SECOND_LEVEL = 384 << 10,
     MOST_GROUPS = 16
 };
-#define MULTIPLIER_LIMIT 1e4     /* growth that still leaves 1e-12, see solve/kernels.h */
-#define ALLOWANCE 100.0          /* squared growth that each pivot may have beside it */
+#define GROWTH_LIMIT 3e3         /* growth that still leaves about 1e-12, see solve/kernels.h */
+#define MANY_PIVOTS 64.0         /* so many, each at the limit, count for one: errors add up like random ones */
 #define LEAST_PATIENCE 1e5       /* steps spent on the second candidate however cheap the first one is */
 
 /* ---- costs ------------------------------------------------------------------------------------- */
@@ -122,7 +122,7 @@ static void compile(compiler *c) {
     anb__layout layout = {0};
     choose_layout(c, &layout);
     anb__emit(&c->work, system, &layout, c->as_sums, plan);
-    plan->growth_limit = MULTIPLIER_LIMIT * MULTIPLIER_LIMIT + ALLOWANCE * system->size;
+    plan->growth_limit = pow(GROWTH_LIMIT, 4) * (1 + system->size / MANY_PIVOTS);
     plan->operations = (uint64_t)layout.cost;
     plan->block_groups = suitable_groups(plan);
 }

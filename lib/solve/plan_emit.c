@@ -308,17 +308,25 @@ static void put_copy(emitter *e, uint32_t row, uint32_t column, uint32_t *count)
     ++*count;
 }
 
-/* Elements that were both needed and wanted. */
+/* Elements of the result that only their slots have: those that others needed too, and those of a small block
+ * that went into the slots. */
+static bool is_to_copy(const emitter *e, uint32_t i, uint32_t j, bool block_in_slots) {
+    const anb__need *need = &e->layout->need;
+    if (!anb__has(need->wanted + (size_t)i * need->words, j)) return false;
+    if (need->active[i] >= e->layout->block) return block_in_slots;
+    return anb__has(need->needed + (size_t)i * need->words, j);
+}
+
 static void emit_copies(emitter *e) {
     const anb__need *need = &e->layout->need;
+    bool block_in_slots = e->layout->pattern.size - e->layout->block <= ANB__FIXED && !block_is_all_result(e);
     put(e, ANB__OP_COPY);
     put(e, 0);
     size_t head = e->code.count - 1;
     uint32_t count = 0;
-    for (uint32_t i = 0; i < need->count && need->active[i] < e->layout->block; i++)
+    for (uint32_t i = 0; i < need->count; i++)
         for (uint32_t j = i; j < need->count; j++) {
-            const size_t at = (size_t)i * need->words;
-            if (!anb__has(need->wanted + at, j) || !anb__has(need->needed + at, j)) continue;
+            if (!is_to_copy(e, i, j, block_in_slots)) continue;
             put_copy(e, need->active[i], need->active[j], &count);
             if (!e->store.symmetric && i != j) put_copy(e, need->active[j], need->active[i], &count);
         }

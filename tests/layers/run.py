@@ -102,6 +102,8 @@ def library():
 def room(path):
     """The folder of lib/ that a path belongs to; None for the files that stand in lib/ itself."""
     parts = path.split("/")
+    if parts[0] == "grammar":
+        return "language" if "netlist" in path or "token" in path else "data"
     return parts[1] if len(parts) > 2 else None
 
 
@@ -137,14 +139,13 @@ def rule_folders_are_known():
 
 
 def rule_layers():
-    lexers = [(p, "language" if "netlist" in p else "data") for p in files("grammar", ".re")]
-    for path, own in [(p, room(p)) for p in library()] + lexers:
+    for path, own in [(p, room(p)) for p in library() + files("grammar", ".re", ".h")]:
         for line, header, quoted in includes(path):
-            target = resolve(path, header, "lib")
+            target = resolve(path, header, "lib", "grammar")
             if not quoted or own is None:
                 continue
             if target is None:
-                yield f"{path}:{line}: {header} is not below lib/"
+                yield f"{path}:{line}: {header} is not there"
             elif target != "lib/anabranch.h" and (room(target) is None or room(target) not in may_know(own)):
                 yield f"{path}:{line}: {own} may not know {target}"
 

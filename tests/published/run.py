@@ -16,6 +16,7 @@ import sys
 import tomllib
 
 HERE = os.path.dirname(os.path.abspath(__file__))
+sys.dont_write_bytecode = True
 sys.path[:0] = [HERE, os.path.join(HERE, "..", "reference")]
 import derive
 import tool
@@ -107,15 +108,21 @@ class Network:
         self.name, self.text, self.names = name, text, names
         self.wanted, self.points, self.extrapolated = set(), {}, None
 
-    def netlist(self, extra=()):
-        """The definitions that the text uses, ahead of it."""
-        definitions = dict(self.names, **dict(extra))
+    def used(self, definitions=None):
+        """The names that the text uses, or that one of those uses."""
+        definitions = definitions or self.names
         used, grown = set(), True
         while grown:
-            words = set(re.findall(r"[A-Za-z_]\w*", self.text + " " + " ".join(definitions[u] for u in used)))
-            grown = not (words & definitions.keys()) <= used
-            used |= words & definitions.keys()
-        self.used = used
+            text = " ".join([self.text, *(definitions[u] for u in used)])
+            found = set(re.findall(r"[A-Za-z_]\w*", text)) & definitions.keys()
+            grown = not found <= used
+            used |= found
+        return used
+
+    def netlist(self, extra=()):
+        """The text, behind the definitions that it uses."""
+        definitions = dict(self.names, **dict(extra))
+        used = self.used(definitions)
         return "".join(f"{k} = {v}\n" for k, v in definitions.items() if k in used) + self.text
 
     def solve(self, source):
@@ -269,6 +276,8 @@ class Evaluator:
 
 def peak(values, most):
     """The extreme of evenly spaced values, by a parabola through its neighbours where it is inside."""
+    if any(v != v for v in values):
+        return math.nan
     v = most(values)
     k = values.index(v)
     if 0 < k < len(values) - 1:
@@ -316,13 +325,13 @@ class Tally:
 def run_block(check, block, source, tally, verbose):
     """A block's given values count only if all its lines hold."""
     problems, mentioned = [], set()
+    evaluators = {id(n): Evaluator(check.topic, n) for n in block["networks"]}
+    for network, line, _ in block["lines"]:
+        evaluators[id(network)].record(line)
     try:
-        evaluators = {id(n): Evaluator(check.topic, n) for n in block["networks"]}
-        for network, line, _ in block["lines"]:
-            evaluators[id(network)].record(line)
         for network in block["networks"]:
+            mentioned |= network.used()
             network.solve(source)
-            mentioned |= getattr(network, "used", set())
     except (tool.Failed, ArithmeticError) as e:
         problems.append(str(e))
     for network, line, listed in block["lines"]:

@@ -1,11 +1,11 @@
 """The reference: networks of parts, solved with mpmath in 50 digits and more.
 
-Written from docs/language.md alone; it shares no idea and no line with lib/. A network is a list of
-placed parts. A part has m branches, each between two nodes, with a voltage v and a current i that
+Written from docs/language.md alone; it shares no line with lib/. A network is a list of placed parts. A part has m branches, each between two nodes, with a voltage v and a current i that
 enters at the first node and leaves at the second, and states m equations A v + B i = 0. The unknowns of
 the dense tableau are all node voltages, all branch currents and the port currents; the equations are
 Kirchhoff's current law at each node, the parts' own equations, and v + z i = 2 sqrt(Re z) a at each port.
-Columns without a pivot (a floating net, a loop of wires) are free, and set to zero.
+Columns without a pivot (a floating net, a loop of wires) are free, which is an error only where a port
+depends on them.
 
 S are power waves (Kurokawa 1965). 0 Hz is a frequency of 1e-40 Hz in 300 digits: whatever vanishes with
 the frequency, even with its root, is then far below anything that is compared.
@@ -450,20 +450,14 @@ class Network:
             row[nv + nb + k] += z[k]
             row[size + k] = 2 * sqrt(z[k].real)
 
-        x = _eliminate(rows, size, PIVOT_AT_ZERO if mp.dps > 2 * DIGITS else PIVOT)
-        out = []
-        for k, (p, m) in enumerate(ends):
-            vp, vm = nodes[p], nodes[m]
-            out.append([])
-            for d in range(np):
-                v = (x[vp][d] if vp is not None else 0) - (x[vm][d] if vm is not None else 0)
-                b = (v - mp.conj(z[k]) * x[nv + nb + k][d]) / (2 * sqrt(z[k].real))
-                out[-1].append(b)
-        return out
+        currents = _eliminate(rows, size, nv + nb, PIVOT_AT_ZERO if mp.dps > 2 * DIGITS else PIVOT)
+        # b = (v - z* i) / (2 sqrt(Re z)), with v = 2 sqrt(Re z) a - z i
+        return [[(k == d) - sqrt(z[k].real) * currents[k][d] for d in range(np)] for k in range(np)]
 
 
-def _eliminate(rows, size, smallest):
-    """Gauss and Jordan, with the largest pivot of each column of scaled rows. -> x[unknown][right side]"""
+def _eliminate(rows, size, first, smallest):
+    """Gauss and Jordan, with the largest pivot of each column of scaled rows. -> the unknowns from `first`
+    on, for each right side. The others need not be determined."""
     width = len(rows[0])
     for row in rows:
         scale = max(fabs(v) for v in row[:size])
@@ -489,8 +483,10 @@ def _eliminate(rows, size, smallest):
             for k in busy:
                 row[k] -= factor * pivot[k]
             row[column] = mpc(0)
-    for r in left:
-        if any(fabs(v) > smallest ** 0.5 for v in rows[r][size:]):
-            raise Singular("the ports are not determined")
-    # a free unknown is zero, so that what stands right of a pivot in its column does not count
-    return [[mpc(0)] * (width - size) if p is None else rows[p][size:] for p in pivots]
+    free = [c for c in range(size) if pivots[c] is None]
+    wanted = [rows[p] if p is not None else None for p in pivots[first:]]
+    if any(fabs(v) > smallest ** 0.5 for r in left for v in rows[r][size:]):
+        raise Singular("no solution")
+    if any(row is None or any(fabs(row[c]) > smallest ** 0.5 for c in free) for row in wanted):
+        raise Singular("the ports are not determined")
+    return [row[size:] for row in wanted]

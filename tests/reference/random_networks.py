@@ -13,7 +13,9 @@ from cases import Case
 
 def networks(count, seed):
     for k in range(count):
-        yield Draw(random.Random(f"{seed}/{k}")).network()
+        case = Draw(random.Random(f"{seed}/{k}")).network()
+        if case.frequencies:
+            yield case
 
 
 class Draw:
@@ -34,7 +36,15 @@ class Draw:
         for _ in range(rng.randint(1, len(tree) + 2)):
             rng.choice((self.chain, self.chain, self.shunt, self.shunt, self.several))()
         f = [0.0, rng.choice((1e6, 137e6, 3.1e9))] + rng.sample((5e8, 1e9, 2e9, 4e9), 2)
-        return Case("random", "\n".join(self.text), self.net, sorted(f))
+        return Case("random", "\n".join(self.text), self.net, [x for x in sorted(f) if self.has_solution(x)])
+
+    def has_solution(self, f):
+        """Not where a node that controls a current floats, for one."""
+        try:
+            self.net.s(f)
+        except n.Singular:
+            return False
+        return True
 
     def port(self, k, node):
         z = self.rng.choice((50, 75, 12.5, 100))

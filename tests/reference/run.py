@@ -11,6 +11,7 @@ pairs, not the tool. Exit status 0 only if all agree.
 import sys
 from collections import defaultdict
 
+sys.dont_write_bytecode = True
 import random_networks
 import reader
 import tool

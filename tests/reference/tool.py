@@ -16,11 +16,17 @@ def binary():
 
 def sweep(text, arguments=()):
     """-> (frequencies in Hz, references in ohm, matrices[point][to][from])"""
-    p = subprocess.run([binary(), "sweep", "-", *arguments], input=text.encode(), capture_output=True,
-                       timeout=600)
+    try:
+        p = subprocess.run([binary(), "sweep", "-", *arguments], input=text.encode(), capture_output=True,
+                           timeout=600)
+    except (OSError, subprocess.TimeoutExpired) as e:
+        raise Failed(str(e)) from e
     if p.returncode:
         raise Failed(f"exit status {p.returncode}: {p.stderr.decode('utf-8', 'replace').strip()[:400]}")
-    return parse(p.stdout.decode())
+    try:
+        return parse(p.stdout.decode())
+    except (ValueError, IndexError) as e:
+        raise Failed(f"output: {e}") from e
 
 
 def parse(text):

@@ -102,8 +102,8 @@ static void measures_are_whole(void **state) {
 
 int main(void) {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(no_name_is_there_twice),        cmocka_unit_test(names_are_found),
-        cmocka_unit_test(arguments_are_whole),           cmocka_unit_test(every_terminal_has_one_branch),
+        cmocka_unit_test(no_name_is_there_twice), cmocka_unit_test(names_are_found),
+        cmocka_unit_test(arguments_are_whole),    cmocka_unit_test(every_terminal_has_one_branch),
         cmocka_unit_test(measures_are_whole),
     };
     int failures = cmocka_run_group_tests(tests, NULL, NULL);

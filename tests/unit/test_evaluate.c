@@ -8,8 +8,8 @@
 /* The value of an expression in a unit, by way of an impedance. */
 static anb_status evaluate(expansion *e, const char *before, const char *expression, const char *unit) {
     char text[1000];
-    snprintf(text, sizeof text, "port a, b: 50 ohm\n%s\na -- impedance((%s)/(1 %s)*1 ohm) -- b\n", before, expression,
-             unit);
+    snprintf(text, sizeof text, "port a, b: 50 ohm\n%s\na -- impedance((%s)/(1 %s)*1 ohm) -- b\n", before,
+             expression, unit);
     expand_text(e, text);
     return e->status;
 }

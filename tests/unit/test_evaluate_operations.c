@@ -81,7 +81,8 @@ static void programs_agree_with_operations(void **state) {
     (void)state;
     anb__term *f = anb__term_frequency(&arena);
     anb__term *root = anb__term_operation(&arena, ANB__SQRT, f, NULL);
-    anb__term *sum = anb__term_operation(&arena, ANB__ADD, root, anb__term_operation(&arena, ANB__MULTIPLY, f, f));
+    anb__term *sum = anb__term_operation(&arena, ANB__ADD, root,
+                                         anb__term_operation(&arena, ANB__MULTIPLY, f, f));
     anb__complex out;
     assert_true(anb__program_value(program(sum), 9, &out));
     assert_true(out.re == 84 && out.im == 0);
@@ -103,12 +104,14 @@ static void deep_expressions_need_no_stack(void **state) {
     (void)state;
     anb__term *fraction = number(0);
     for (int i = 0; i < 200; i++) /* of the kind 1 + 1/(1 + 1/(1 + ... )) */
-        fraction = anb__term_operation(&arena, ANB__DIVIDE, number(1),
-                                       anb__term_operation(&arena, ANB__ADD, anb__term_frequency(&arena), fraction));
+        fraction = anb__term_operation(
+            &arena, ANB__DIVIDE, number(1),
+            anb__term_operation(&arena, ANB__ADD, anb__term_frequency(&arena), fraction));
     program(fraction);
     anb__term *x = number(0);
     anb__complex out;
-    for (int i = 0; i < 200000; i++) x = anb__term_operation(&arena, ANB__ADD, x, anb__term_frequency(&arena));
+    for (int i = 0; i < 200000; i++)
+        x = anb__term_operation(&arena, ANB__ADD, x, anb__term_frequency(&arena));
     assert_true(anb__program_value(program(x), 1, &out));
     assert_true(out.re == 200000);
 }
@@ -117,7 +120,8 @@ static void too_many_values_at_once_are_refused(void **state) {
     (void)state;
     anb__term *f = anb__term_frequency(&arena), *x = f, *kept[100];
     for (int i = 0; i < 100; i++) x = kept[i] = anb__term_operation(&arena, ANB__ADD, x, f);
-    for (int i = 0; i < ANB__PROGRAM_SLOTS - 4; i++) x = anb__term_operation(&arena, ANB__ADD, kept[99 - i], x);
+    for (int i = 0; i < ANB__PROGRAM_SLOTS - 4; i++)
+        x = anb__term_operation(&arena, ANB__ADD, kept[99 - i], x);
     assert_non_null(anb__program_of(&arena, &arena, x, &making));
     for (int i = 0; i < 100; i++) x = anb__term_operation(&arena, ANB__ADD, kept[99 - i], x);
     assert_null(anb__program_of(&arena, &arena, x, &making));
@@ -137,28 +141,31 @@ static void series_agree_with_operations(void **state) {
     static const struct {
         anb__operation operation;
         double start;
-    } cases[] = {{ANB__SQRT, 2}, {ANB__ABS, -3}, {ANB__EXP, 0.3}, {ANB__LN, 2}, {ANB__LOG10, 3},
-                 {ANB__SIN, 0.4}, {ANB__COS, 0.4}, {ANB__TAN, 0.4}, {ANB__SIN_TURNS, 0.1},
-                 {ANB__COS_TURNS, 0.1}, {ANB__TAN_TURNS, 0.1}, {ANB__ASIN, 0.2}, {ANB__ACOS, 0.2},
-                 {ANB__ATAN, 0.7}, {ANB__ROUND, 1.2}, {ANB__FLOOR, 1.2}, {ANB__CEIL, 1.2},
-                 {ANB__AMPLITUDE, 3}, {ANB__DECIBEL, 4}, {ANB__NEGATE, 1}, {ANB__REAL, 1}, {ANB__CONJ, 1},
-                 {ANB__ROUND, 2.5}, {ANB__CEIL, 2}, {ANB__FLOOR, 2}};
+    } cases[] = {{ANB__SQRT, 2},        {ANB__ABS, -3},        {ANB__EXP, 0.3},       {ANB__LN, 2},
+                 {ANB__LOG10, 3},       {ANB__SIN, 0.4},       {ANB__COS, 0.4},       {ANB__TAN, 0.4},
+                 {ANB__SIN_TURNS, 0.1}, {ANB__COS_TURNS, 0.1}, {ANB__TAN_TURNS, 0.1}, {ANB__ASIN, 0.2},
+                 {ANB__ACOS, 0.2},      {ANB__ATAN, 0.7},      {ANB__ROUND, 1.2},     {ANB__FLOOR, 1.2},
+                 {ANB__CEIL, 1.2},      {ANB__AMPLITUDE, 3},   {ANB__DECIBEL, 4},     {ANB__NEGATE, 1},
+                 {ANB__REAL, 1},        {ANB__CONJ, 1},        {ANB__ROUND, 2.5},     {ANB__CEIL, 2},
+                 {ANB__FLOOR, 2}};
     double u = 0.01;
     for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
         anb__series start = anb__series_real(cases[i].start), step = anb__series_power(anb__cx(0.5, 0), 2);
         anb__series x = anb__series_add(&start, &step), out;
         assert_true(anb__operate_series(cases[i].operation, &x, &x, &out));
-        assert_near(value_of(&out, u), operate(cases[i].operation, cases[i].start + 0.5 * u * u, 0).re, 4e-15);
+        assert_near(value_of(&out, u), operate(cases[i].operation, cases[i].start + 0.5 * u * u, 0).re,
+                    4e-15);
     }
 }
 
 static void two_operands_agree_too(void **state) {
     (void)state;
-    static const anb__operation operations[] = {ANB__ADD, ANB__SUBTRACT, ANB__MULTIPLY, ANB__DIVIDE,
-                                                ANB__RAISE, ANB__ATAN2, ANB__MIN, ANB__MAX};
+    static const anb__operation operations[] = {ANB__ADD,   ANB__SUBTRACT, ANB__MULTIPLY, ANB__DIVIDE,
+                                                ANB__RAISE, ANB__ATAN2,    ANB__MIN,      ANB__MAX};
     double u = 0.01;
     for (size_t i = 0; i < sizeof operations / sizeof *operations; i++) {
-        anb__series a = anb__series_real(1.5), b = anb__series_real(0.75), step = anb__series_power(anb__cx(1, 0), 1);
+        anb__series a = anb__series_real(1.5), b = anb__series_real(0.75),
+                    step = anb__series_power(anb__cx(1, 0), 1);
         anb__series out;
         a = anb__series_add(&a, &step);
         b = anb__series_sub(&b, &step);
@@ -201,9 +208,10 @@ static void preferred_values(void **state) {
         double value;
         int per_decade;
         double expected;
-    } cases[] = {{2.72, 24, 2.7}, {3.05, 24, 3.0}, {8.3, 24, 8.2}, {5e3, 24, 5.1e3}, {5.2e-9, 12, 5.6e-9},
-                 {47e-12, 3, 47e-12}, {1.5e-9, 6, 1.5e-9}, {50, 48, 51.1}, {50, 96, 49.9}, {9.19, 192, 9.2},
-                 {9.9, 96, 10}, {0.0979, 192, 0.0976}, {9.7e5, 24, 1e6}, {3.3e-12, 24, 3.3e-12}};
+    } cases[] = {{2.72, 24, 2.7},      {3.05, 24, 3.0},       {8.3, 24, 8.2},      {5e3, 24, 5.1e3},
+                 {5.2e-9, 12, 5.6e-9}, {47e-12, 3, 47e-12},   {1.5e-9, 6, 1.5e-9}, {50, 48, 51.1},
+                 {50, 96, 49.9},       {9.19, 192, 9.2},      {9.9, 96, 10},       {0.0979, 192, 0.0976},
+                 {9.7e5, 24, 1e6},     {3.3e-12, 24, 3.3e-12}};
     for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
         double value = anb__preferred_value(cases[i].value, cases[i].per_decade);
         if (value != cases[i].expected) fail_msg("%.17g, %.17g expected", value, cases[i].expected);

@@ -29,11 +29,10 @@ static void check(const char *netlist, const char *expected) {
 
 static void values_become_parts(void **state) {
     (void)state;
-    check(PORTS "a -- 50 ohm -- 2 mS -- 3 nH -- 4 pF -- b\n",
-          "resistor: a 3 r=50\n"
-          "admittance: 3 4 y=0.002\n"
-          "inductor: 4 5 l=3e-09\n"
-          "capacitor: 5 b c=4e-12\n");
+    check(PORTS "a -- 50 ohm -- 2 mS -- 3 nH -- 4 pF -- b\n", "resistor: a 3 r=50\n"
+                                                              "admittance: 3 4 y=0.002\n"
+                                                              "inductor: 4 5 l=3e-09\n"
+                                                              "capacitor: 5 b c=4e-12\n");
     check(PORTS "a -- 30 ohm + j*20 ohm -- b\na -- short -- b\na -- 0 ohm -- b\na -- open -- b\n",
           "impedance: a b z=30+20j\n"
           "resistor: a b r=0\n"
@@ -45,20 +44,18 @@ static void values_become_parts(void **state) {
 
 static void shunts_do_not_move_along(void **state) {
     (void)state;
-    check(PORTS "a -- shunt 1 pF -- 2 nH -- shunt 3 pF -- b\n",
-          "capacitor: a ground c=1e-12\n"
-          "inductor: a b l=2e-09\n"
-          "capacitor: b ground c=3e-12\n");
+    check(PORTS "a -- shunt 1 pF -- 2 nH -- shunt 3 pF -- b\n", "capacitor: a ground c=1e-12\n"
+                                                                "inductor: a b l=2e-09\n"
+                                                                "capacitor: b ground c=3e-12\n");
     check(PORTS "a -- 1 ohm -- shunt 2 ohm -- shunt 3 ohm -- 4 ohm -- b -- shunt 5 ohm\n",
           "resistor: a 3 r=1\n"
           "resistor: 3 ground r=2\n"
           "resistor: 3 ground r=3\n"
           "resistor: 3 b r=4\n"
           "resistor: b ground r=5\n");
-    check(PORTS "x = shunt 1 pF -- shunt 2 pF\na -- x -- 3 ohm -- b\n",
-          "capacitor: a ground c=1e-12\n"
-          "capacitor: a ground c=2e-12\n"
-          "resistor: a b r=3\n");
+    check(PORTS "x = shunt 1 pF -- shunt 2 pF\na -- x -- 3 ohm -- b\n", "capacitor: a ground c=1e-12\n"
+                                                                        "capacitor: a ground c=2e-12\n"
+                                                                        "resistor: a b r=3\n");
 }
 
 static void stubs(void **state) {
@@ -74,20 +71,18 @@ static void stubs(void **state) {
 
 static void groups_and_parallels(void **state) {
     (void)state;
-    check(PORTS "a -- 1 ohm || 2 ohm || (3 ohm -- 4 ohm) -- b\n",
-          "resistor: a b r=1\n"
-          "resistor: a b r=2\n"
-          "resistor: a 3 r=3\n"
-          "resistor: 3 b r=4\n");
+    check(PORTS "a -- 1 ohm || 2 ohm || (3 ohm -- 4 ohm) -- b\n", "resistor: a b r=1\n"
+                                                                  "resistor: a b r=2\n"
+                                                                  "resistor: a 3 r=3\n"
+                                                                  "resistor: 3 b r=4\n");
     check(PORTS "a -- (shunt 1 ohm -- 2 ohm -- shunt 3 ohm) || line(50 ohm, 1 ns) -- b\n",
           "resistor: a ground r=1\n"
           "resistor: a b r=2\n"
           "resistor: b ground r=3\n"
           "line: a ground, b ground z=50 length=1e-09\n");
-    check(PORTS "a -- shunt 1 ohm || 2 ohm -- 3 ohm -- b\n",
-          "resistor: a ground r=1\n"
-          "resistor: a ground r=2\n"
-          "resistor: a b r=3\n");
+    check(PORTS "a -- shunt 1 ohm || 2 ohm -- 3 ohm -- b\n", "resistor: a ground r=1\n"
+                                                             "resistor: a ground r=2\n"
+                                                             "resistor: a b r=3\n");
 }
 
 static void reversed_and_inverse(void **state) {
@@ -107,17 +102,15 @@ static void reversed_and_inverse(void **state) {
 
 static void repeated(void **state) {
     (void)state;
-    check(PORTS "a -- repeat(3, 1 ohm -- shunt 2 ohm) -- b\n",
-          "resistor: a 3 r=1\n"
-          "resistor: 3 ground r=2\n"
-          "resistor: 3 4 r=1\n"
-          "resistor: 4 ground r=2\n"
-          "resistor: 4 b r=1\n"
-          "resistor: b ground r=2\n");
-    check(PORTS "a -- repeat(2, shunt 2 ohm) -- 1 ohm -- b\n",
-          "resistor: a ground r=2\n"
-          "resistor: a ground r=2\n"
-          "resistor: a b r=1\n");
+    check(PORTS "a -- repeat(3, 1 ohm -- shunt 2 ohm) -- b\n", "resistor: a 3 r=1\n"
+                                                               "resistor: 3 ground r=2\n"
+                                                               "resistor: 3 4 r=1\n"
+                                                               "resistor: 4 ground r=2\n"
+                                                               "resistor: 4 b r=1\n"
+                                                               "resistor: b ground r=2\n");
+    check(PORTS "a -- repeat(2, shunt 2 ohm) -- 1 ohm -- b\n", "resistor: a ground r=2\n"
+                                                               "resistor: a ground r=2\n"
+                                                               "resistor: a b r=1\n");
 }
 
 /* ---- terminals ------------------------------------------------------------------------- */
@@ -130,9 +123,8 @@ static void parts_with_on(void **state) {
     check(PORTS "transformer(2) on (b2 = c, a1 = a, a2 = ground, b1 = b)\nc -- 1 ohm -- ground\n",
           "transformer: a ground, b c n=2\n"
           "resistor: c ground r=1\n");
-    check(PORTS "line(50 ohm, 1 ns) on (a, b, c, d)\nc -- 1 ohm -- d\n",
-          "line: a c, b d z=50 length=1e-09\n"
-          "resistor: c d r=1\n");
+    check(PORTS "line(50 ohm, 1 ns) on (a, b, c, d)\nc -- 1 ohm -- d\n", "line: a c, b d z=50 length=1e-09\n"
+                                                                         "resistor: c d r=1\n");
     check(PORTS "coupled_lines(1 ns, even = 60 ohm, odd = 40 ohm) on (a, b, c, d)\nc -- 1 ohm -- d\n",
           "coupled_lines: a ground, b ground, c ground, d ground length=1e-09 even=60 odd=40\n"
           "resistor: c d r=1\n");
@@ -166,7 +158,8 @@ static void what_only_open_touches_has_no_node(void **state) {
 
 static void loops_count_both_ends(void **state) {
     (void)state;
-    check(PORTS "join n[0], a\njoin n[2], b\nfor k in 1 .. 2 {\n x = k*1 ohm\n n[k-1] -- r[k]: x -- n[k]\n}\n",
+    check(PORTS
+          "join n[0], a\njoin n[2], b\nfor k in 1 .. 2 {\n x = k*1 ohm\n n[k-1] -- r[k]: x -- n[k]\n}\n",
           "resistor r[1]: a n[1] r=1\n"
           "resistor r[2]: n[1] b r=2\n");
     check(PORTS "a -- 1 ohm -- b\nfor k in 1 .. 0 { a -- 2 ohm -- b }\n", "resistor: a b r=1\n");
@@ -183,9 +176,9 @@ static void loops_count_both_ends(void **state) {
 
 static void conditions_choose(void **state) {
     (void)state;
-    static const char text[] =
-        PORTS "if n == 1 {\n x = 1 ohm\n} else if n == 2 and not (n > 2) {\n x = 2 ohm\n} else {\n x = 3 ohm\n}\n"
-              "a -- x -- b\n";
+    static const char text[] = PORTS
+        "if n == 1 {\n x = 1 ohm\n} else if n == 2 and not (n > 2) {\n x = 2 ohm\n} else {\n x = 3 ohm\n}\n"
+        "a -- x -- b\n";
     for (int n = 1; n <= 3; n++) {
         char netlist[400], expected[40];
         snprintf(netlist, sizeof netlist, "n = %d\n%s", n, text);
@@ -217,7 +210,8 @@ static void networks_have_their_own_names(void **state) {
 
 static void own_parts_see_where_they_are_defined(void **state) {
     (void)state;
-    check(PORTS "unit = 2 ohm\ntwice(n) = n*unit -- shunt unit\nnetwork cell(n) {\n port p, q\n p -- twice(n) -- q\n}\n"
+    check(PORTS "unit = 2 ohm\ntwice(n) = n*unit -- shunt unit\nnetwork cell(n) {\n port p, q\n p -- "
+                "twice(n) -- q\n}\n"
                 "a -- cell(3) -- b\n",
           "resistor: a b r=6\n"
           "resistor: b ground r=2\n");
@@ -225,9 +219,10 @@ static void own_parts_see_where_they_are_defined(void **state) {
 
 static void assumed_options(void **state) {
     (void)state;
-    check(PORTS "a -- 1 nH -- b\nassume inductor(q = 40 @ 100 MHz), capacitor(esr = 1 ohm)\n"
-                "a -- 1 nH -- b\na -- inductor(1 nH, resistance = 2 ohm) -- b\na -- inductor(1 nH, q = 7) -- b\n"
-                "a -- 2 pF -- b\n",
+    check(PORTS
+          "a -- 1 nH -- b\nassume inductor(q = 40 @ 100 MHz), capacitor(esr = 1 ohm)\n"
+          "a -- 1 nH -- b\na -- inductor(1 nH, resistance = 2 ohm) -- b\na -- inductor(1 nH, q = 7) -- b\n"
+          "a -- 2 pF -- b\n",
           "inductor: a b l=1e-09\n"
           "inductor: a b l=1e-09 q=40@100000000\n"
           "inductor: a b l=1e-09 resistance=2\n"
@@ -237,7 +232,8 @@ static void assumed_options(void **state) {
                 "network n() {\n port p, q\n p -- 2 nH -- q\n}\n",
           "inductor: a b l=1e-09\n"
           "inductor: a b l=2e-09\n");
-    check(PORTS "assume line(permittivity = 4, loss = 2 dB/m)\na -- line(50 ohm, 1 m) -- line(50 ohm, 1 ns) -- b\n",
+    check(PORTS
+          "assume line(permittivity = 4, loss = 2 dB/m)\na -- line(50 ohm, 1 m) -- line(50 ohm, 1 ns) -- b\n",
           "line: a ground, 3 ground z=50 length=1 loss=2 permittivity=4\n"
           "line: 3 ground, b ground z=50 length=1e-09\n");
 }
@@ -259,8 +255,9 @@ static void a_composite_may_have_a_label(void **state) {
 static void equal_placements_share_their_arguments(void **state) {
     (void)state;
     static expansion e;
-    expand_text(&e, PORTS "for k in 1 .. 3 { a -- line(50 ohm, 90 deg @ 1 GHz) -- b }\na -- line(50 ohm, length = 0.25 "
-                          "wave @ 1 GHz) -- b\na -- line(51 ohm, 90 deg @ 1 GHz) -- b\n");
+    expand_text(&e, PORTS
+                "for k in 1 .. 3 { a -- line(50 ohm, 90 deg @ 1 GHz) -- b }\na -- line(50 ohm, length = 0.25 "
+                "wave @ 1 GHz) -- b\na -- line(51 ohm, 90 deg @ 1 GHz) -- b\n");
     assert_int_equal(e.status, ANB_OK);
     for (int i = 1; i < 4; i++) assert_ptr_equal(e.network.parts[i].arguments, e.network.parts[0].arguments);
     assert_ptr_not_equal(e.network.parts[4].arguments, e.network.parts[0].arguments);
@@ -271,10 +268,12 @@ static void equal_placements_share_their_arguments(void **state) {
 
 static void ports_stand_anywhere(void **state) {
     (void)state;
-    char *text = text_of_parts("port a: 20 ohm - j*15 ohm\nport x: 75 ohm at p, q\nfor k in 1 .. 2 { port o[k]: 50 ohm at n[k] "
-                               "}\nn[1] -- 1 ohm -- p\nn[2] -- 1 ohm -- q\na -- 1 ohm -- q\n",
-                               write_ports);
-    assert_string_equal(text, "a: 20-15j a ground\nx: 75+0j p q\no[1]: 50+0j n[1] ground\no[2]: 50+0j n[2] ground\n");
+    char *text = text_of_parts(
+        "port a: 20 ohm - j*15 ohm\nport x: 75 ohm at p, q\nfor k in 1 .. 2 { port o[k]: 50 ohm at n[k] "
+        "}\nn[1] -- 1 ohm -- p\nn[2] -- 1 ohm -- q\na -- 1 ohm -- q\n",
+        write_ports);
+    assert_string_equal(
+        text, "a: 20-15j a ground\nx: 75+0j p q\no[1]: 50+0j n[1] ground\no[2]: 50+0j n[2] ground\n");
     free(text);
 }
 
@@ -283,9 +282,11 @@ static void ports_stand_anywhere(void **state) {
 static void sweeps_are_counted(void **state) {
     (void)state;
     static expansion e;
-    expand_text(&e, THROUGH "band = 1 GHz .. 2 GHz\nsweep band points 5\nsweep 1 GHz .. 2 GHz step 0.3 GHz\n"
-                            "sweep 1 MHz .. 10 GHz per decade 50\nsweep at 0 Hz, 3 GHz\nsweep 1 MHz .. 1.5 MHz step 0.1 MHz\n"
-                            "sweep 1 GHz .. 1 GHz per decade 3\nsweep 1 MHz .. 3 MHz per decade 10\n");
+    expand_text(
+        &e, THROUGH
+        "band = 1 GHz .. 2 GHz\nsweep band points 5\nsweep 1 GHz .. 2 GHz step 0.3 GHz\n"
+        "sweep 1 MHz .. 10 GHz per decade 50\nsweep at 0 Hz, 3 GHz\nsweep 1 MHz .. 1.5 MHz step 0.1 MHz\n"
+        "sweep 1 GHz .. 1 GHz per decade 3\nsweep 1 MHz .. 3 MHz per decade 10\n");
     static const uint64_t counts[] = {5, 4, 201, 2, 6, 1, 6};
     assert_int_equal(e.status, ANB_OK);
     assert_int_equal(e.network.sweep_count, 7);
@@ -315,9 +316,10 @@ static void replacements(void **state) {
 static void drives_and_kept_statements(void **state) {
     (void)state;
     static expansion e;
-    expand_text(&e, THROUGH "drive b: 10 dBm, 90 deg\ndrive a: 2 W\ntune t = 2 ohm within 1 ohm .. 4 ohm\n"
-                            "cases c = 1 pF .. 3 pF points 3\na -- t -- c -- b\nrequire gain(a, b) >= -3 dB\n"
-                            "require abs(S(b, a)) + vswr(a) <= 2 over 1 GHz .. 2 GHz weight 2\nsweep at 1 GHz\n");
+    expand_text(&e,
+                THROUGH "drive b: 10 dBm, 90 deg\ndrive a: 2 W\ntune t = 2 ohm within 1 ohm .. 4 ohm\n"
+                        "cases c = 1 pF .. 3 pF points 3\na -- t -- c -- b\nrequire gain(a, b) >= -3 dB\n"
+                        "require abs(S(b, a)) + vswr(a) <= 2 over 1 GHz .. 2 GHz weight 2\nsweep at 1 GHz\n");
     assert_int_equal(e.status, ANB_OK);
     assert_int_equal(e.network.drive_count, 2);
     assert_int_equal(e.network.drives[0].port, 1);
@@ -354,12 +356,14 @@ static void expect_limit(const char *netlist, const char *words) {
 static void limits(void **state) {
     (void)state;
     expect_limit(THROUGH "for k in 1 .. 1000001 { }\n", "1 000 000 rounds of one loop");
-    expect_limit(THROUGH "for i in 1 .. 1000 { for k in 1 .. 1000 { a -- 1 ohm || 2 ohm -- b }\n}\n", "1 000 000 parts");
+    expect_limit(THROUGH "for i in 1 .. 1000 { for k in 1 .. 1000 { a -- 1 ohm || 2 ohm -- b }\n}\n",
+                 "1 000 000 parts");
     expect_limit(THROUGH "for i in 1 .. 1000 { for k in 1 .. 100000 { } }\n", "10 000 000 rounds");
     expect_limit(THROUGH "sweep 1 Hz .. 1 GHz points 10000001\n", "10 000 000 points");
     expect_limit(THROUGH "sweep 0 Hz .. 1 GHz step 1 Hz\n", "10 000 000 points");
     expect_limit(THROUGH "cases x = 1 .. 2 points 40\ncases y = 1 .. 2 points 30\n", "1000 combinations");
-    expect_limit(THROUGH "a -- n() -- b\nnetwork n() {\n port p, q\n p -- n() -- q\n}\n", "places itself without end");
+    expect_limit(THROUGH "a -- n() -- b\nnetwork n() {\n port p, q\n p -- n() -- q\n}\n",
+                 "places itself without end");
 }
 
 /* Each use of a name is a use of all that it stands for. */

@@ -24,7 +24,8 @@ typedef struct expansion {
     jmp_buf escape;
 } expansion;
 
-static inline void expand_with(expansion *e, const char *path, const char *text, const anb_overrides *overrides) {
+static inline void expand_with(expansion *e, const char *path, const char *text,
+                               const anb_overrides *overrides) {
     memset(e, 0, sizeof *e);
     if (setjmp(e->escape)) {
         e->status = ANB_MEMORY;
@@ -53,8 +54,8 @@ static inline void write_message(const anb__report *report, const anb__diagnosti
     const anb__source *source = &report->sources.list[d->span.source];
     anb__place(source, d->span.start, &line, &column);
     anb__place(source, d->span.end, &end_line, &end_column);
-    fprintf(to, "%s:%u:%u-%u: %s: %s [%s]\n", source->path, line, column, end_column,
-            d->severity == ANB_ERROR ? "error" : "warning", d->text, d->code);
+    fprintf(to, "%s%s%u:%u-%u: %s: %s [%s]\n", source->path, *source->path ? ":" : "", line, column,
+            end_column, d->severity == ANB_ERROR ? "error" : "warning", d->text, d->code);
     for (const anb__note *n = d->notes; n; n = n->next) {
         anb__place(&report->sources.list[n->span.source], n->span.start, &line, &column);
         fprintf(to, "    note %u:%u: %s\n", line, column, n->text);
