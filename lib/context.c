@@ -47,20 +47,27 @@ static void place_message(anb__arena *arena, const anb__report *report, anb__spa
     out->source_line_length = last > first ? last - first : 0;
 }
 
-static anb_message *copy_notes(anb__arena *arena, const anb__report *report, const anb__diagnostic *d, size_t *count) {
+static anb_message *copy_notes(anb__arena *arena, const anb__report *report, const anb__diagnostic *d,
+                               size_t *count) {
     *count = 0;
     for (const anb__note *note = d->notes; note; note = note->next) ++*count;
     anb_message *list = anb__arena_take(arena, (*count + 1) * sizeof *list), *to = list;
     for (const anb__note *note = d->notes; note; note = note->next, to++) {
-        *to = (anb_message){.severity = ANB_NOTE, .code = d->code, .text = copy_text(arena, note->text), .path = ""};
+        *to = (anb_message){
+            .severity = ANB_NOTE, .code = d->code, .text = copy_text(arena, note->text), .path = ""};
         place_message(arena, report, note->span, to);
     }
     return list;
 }
 
-static void copy_message(anb__arena *arena, const anb__report *report, const anb__diagnostic *d, anb_message *to) {
-    *to = (anb_message){.severity = d->severity, .code = d->code, .text = copy_text(arena, d->text),
-                        .hint = copy_text(arena, d->hint), .path = "", .source_line = ""};
+static void copy_message(anb__arena *arena, const anb__report *report, const anb__diagnostic *d,
+                         anb_message *to) {
+    *to = (anb_message){.severity = d->severity,
+                        .code = d->code,
+                        .text = copy_text(arena, d->text),
+                        .hint = copy_text(arena, d->hint),
+                        .path = "",
+                        .source_line = ""};
     place_message(arena, report, d->span, to);
 }
 
@@ -103,7 +110,9 @@ anb_status anb__context_take(anb_context *context, anb__report *report) {
 
 size_t anb_message_count(const anb_context *context) { return context->message_count; }
 
-void anb_message_get(const anb_context *context, size_t index, anb_message *out) { *out = context->messages[index]; }
+void anb_message_get(const anb_context *context, size_t index, anb_message *out) {
+    *out = context->messages[index];
+}
 
 size_t anb_note_count(const anb_context *context, size_t index) { return context->notes[index].count; }
 

@@ -30,7 +30,8 @@ static bool find_text(reading *r, const char **text, uint32_t *length) {
     }
     *text = anb__read_text(&r->netlist->arena, r->path, length);
     if (*text) return true;
-    anb__error(&r->netlist->report, nowhere(), "unreadable", "`%s` cannot be read: %s", r->path, strerror(errno));
+    anb__error(&r->netlist->report, nowhere(), "unreadable", "`%s` cannot be read: %s", r->path,
+               strerror(errno));
     return false;
 }
 
@@ -64,18 +65,22 @@ static anb_status read_netlist(anb_context *context, reading *r, anb_netlist **o
     n->arena.escape = n->network.arena.escape = NULL;
     anb_status copied = anb__context_take(context, &n->report);
     if (r->status == ANB_OK) r->status = copied;
-    if (r->status == ANB_OK) *out = n;
-    else anb_netlist_free(n);
+    if (r->status == ANB_OK)
+        *out = n;
+    else
+        anb_netlist_free(n);
     return r->status;
 }
 
-anb_status anb_netlist_read(anb_context *context, const char *path, const anb_overrides *overrides, anb_netlist **out) {
+anb_status anb_netlist_read(anb_context *context, const char *path, const anb_overrides *overrides,
+                            anb_netlist **out) {
     return read_netlist(context, &(reading){.path = path, .overrides = overrides}, out);
 }
 
 anb_status anb_netlist_parse(anb_context *context, const char *path, const char *text, size_t length,
                              const anb_overrides *overrides, anb_netlist **out) {
-    return read_netlist(context, &(reading){.path = path, .text = text, .length = length, .overrides = overrides}, out);
+    return read_netlist(
+        context, &(reading){.path = path, .text = text, .length = length, .overrides = overrides}, out);
 }
 
 void anb_netlist_free(anb_netlist *netlist) {
@@ -92,7 +97,9 @@ const char *anb_netlist_title(const anb_netlist *netlist) { return netlist->netw
 
 size_t anb_netlist_port_count(const anb_netlist *netlist) { return netlist->network.port_count; }
 
-const char *anb_netlist_port_name(const anb_netlist *netlist, size_t port) { return netlist->network.ports[port].name; }
+const char *anb_netlist_port_name(const anb_netlist *netlist, size_t port) {
+    return netlist->network.ports[port].name;
+}
 
 void anb_netlist_port_reference(const anb_netlist *netlist, size_t port, double out[2]) {
     out[0] = netlist->network.ports[port].z.re;
@@ -101,7 +108,9 @@ void anb_netlist_port_reference(const anb_netlist *netlist, size_t port, double 
 
 size_t anb_netlist_node_count(const anb_netlist *netlist) { return netlist->network.node_count; }
 
-const char *anb_netlist_node_name(const anb_netlist *netlist, size_t node) { return netlist->network.node_names[node]; }
+const char *anb_netlist_node_name(const anb_netlist *netlist, size_t node) {
+    return netlist->network.node_names[node];
+}
 
 size_t anb_netlist_part_count(const anb_netlist *netlist) { return netlist->network.part_count; }
 

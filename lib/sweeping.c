@@ -26,8 +26,8 @@ typedef struct sweeping {
 
 /* ---- beginning and end --------------------------------------------------------------------------- */
 
-/* Lets `check` write into a fresh report and hands its messages to the context. ANB_INVALID where `check` says
- * false. */
+/* Lets `check` write into a fresh report and hands its messages to the context. ANB_INVALID where `check`
+ * says false. */
 static anb_status consult(const sweeping *s, bool (*check)(anb__report *report, void *user), void *user) {
     anb__arena arena = ANB__ARENA_EMPTY;
     anb__report report = {.arena = &arena, .sources = s->netlist->report.sources};
@@ -56,7 +56,8 @@ static bool write_complaint(anb__report *report, void *user) {
 }
 
 /* One message of the network as a whole, at a place. */
-static anb_status complain(const sweeping *s, anb__span span, const char *code, const char *text, const char *hint) {
+static anb_status complain(const sweeping *s, anb__span span, const char *code, const char *text,
+                           const char *hint) {
     return consult(s, write_complaint, &(complaint){span, code, text, hint});
 }
 
@@ -70,7 +71,8 @@ static bool check_sweep(anb__report *report, void *user) {
     return anb__require_sweep(report, s->netlist->file, &s->netlist->network);
 }
 
-static anb_status begin(sweeping *s, anb_context *context, const anb_netlist *netlist, const anb_sweep_options *options) {
+static anb_status begin(sweeping *s, anb_context *context, const anb_netlist *netlist,
+                        const anb_sweep_options *options) {
     static const anb_sweep_options defaults = {0};
     *s = (sweeping){.context = context, .netlist = netlist, .options = options ? options : &defaults};
     anb__context_begin(context);
@@ -97,7 +99,8 @@ static void end(sweeping *s) {
 /* The part whose branch an unknown current of the tableau belongs to. */
 static const anb__placed *part_of_current(const anb__network *network, uint32_t branch) {
     for (uint32_t i = 0; i < network->part_count; i++)
-        if (branch - network->parts[i].first_branch < network->parts[i].branch_count) return &network->parts[i];
+        if (branch - network->parts[i].first_branch < network->parts[i].branch_count)
+            return &network->parts[i];
     return NULL;
 }
 
@@ -137,17 +140,20 @@ static anb_status complain_unknown(const sweeping *s, uint32_t unknown, const ch
         while (t.node_unknown[n] != unknown) n++;
         name_node(network, n, node, sizeof node);
         part = part_at_node(network, n);
-        snprintf(text, sizeof text, "at %s the network has no S-parameters: nothing determines the voltage of %s", at, node);
+        snprintf(text, sizeof text,
+                 "at %s the network has no S-parameters: nothing determines the voltage of %s", at, node);
     } else if (unknown < t.first_port) {
         part = part_of_current(network, unknown - t.first_branch);
         if (part) name_node(network, network->branches[unknown - t.first_branch].plus, node, sizeof node);
-        snprintf(text, sizeof text, "at %s the network has no S-parameters: nothing determines the current of this part at %s",
+        snprintf(text, sizeof text,
+                 "at %s the network has no S-parameters: nothing determines the current of this part at %s",
                  at, node);
     } else if (unknown != UINT32_MAX) {
         const anb__port *port = &network->ports[unknown - t.first_port];
         span = port->span;
         name_node(network, port->plus, node, sizeof node);
-        snprintf(text, sizeof text, "at %s the network has no S-parameters: the current of port `%s` at %s has no finite value",
+        snprintf(text, sizeof text,
+                 "at %s the network has no S-parameters: the current of port `%s` at %s has no finite value",
                  at, port->name, node);
     } else {
         snprintf(text, sizeof text, "at %s the network has no S-parameters", at);
@@ -166,7 +172,8 @@ static anb_status complain_failure(const sweeping *s) {
     return complain(s, s->network.parts[o->failed_part].span, "no-value", text, NULL);
 }
 
-/* ---- running ------------------------------------------------------------------------------------------------ */
+/* ---- running
+ * ------------------------------------------------------------------------------------------------ */
 
 static size_t elements_of(const sweeping *s) {
     size_t ports = s->network.port_count;
@@ -180,12 +187,14 @@ static uint64_t block_points(const sweeping *s) {
 
 static void tell_progress(const sweeping *s, const anb__block *block) {
     if (!s->options->progress) return;
-    s->options->progress(s->options->user, (double)(block->first + block->count) / (double)s->netlist->grid.count);
+    s->options->progress(s->options->user,
+                         (double)(block->first + block->count) / (double)s->netlist->grid.count);
 }
 
 static anb_status run(sweeping *s, anb__job *job) {
     job->block_points = block_points(s);
-    anb_status status = anb__run(&s->engine, &s->netlist->grid, s->options->threads, job, &s->context->cancelled, &s->outcome);
+    anb_status status = anb__run(&s->engine, &s->netlist->grid, s->options->threads, job,
+                                 &s->context->cancelled, &s->outcome);
     return status == ANB_INVALID ? complain_failure(s) : status;
 }
 
@@ -207,7 +216,8 @@ static anb_status compute_into(anb__bench *bench, const anb__block *block, anb_d
     return anb__compute_points(bench, block->hz, block->count, data->s);
 }
 
-/* ---- into one block of data -------------------------------------------------------------------------------------- */
+/* ---- into one block of data
+ * -------------------------------------------------------------------------------------- */
 
 typedef struct collecting {
     sweeping base;
@@ -230,24 +240,31 @@ static anb_status only_progress(void *user, anb__block *block) {
     return ANB_OK;
 }
 
-anb_status anb_sweep(anb_context *context, const anb_netlist *netlist, const anb_sweep_options *options, anb_data **out) {
+anb_status anb_sweep(anb_context *context, const anb_netlist *netlist, const anb_sweep_options *options,
+                     anb_data **out) {
     collecting c = {0};
     *out = NULL;
     anb_status status = begin(&c.base, context, netlist, options);
     if (status == ANB_OK) status = compile(&c.base);
     if (status == ANB_OK) {
         c.data = new_data(&c.base, netlist->grid.count);
-        anb__job job = {.user = &c, .make_payload = no_payload, .free_payload = keep_payload, .process = collect,
+        anb__job job = {.user = &c,
+                        .make_payload = no_payload,
+                        .free_payload = keep_payload,
+                        .process = collect,
                         .deliver = only_progress};
         status = c.data ? run(&c.base, &job) : ANB_MEMORY;
     }
-    if (status == ANB_OK) *out = c.data;
-    else anb_data_free(c.data);
+    if (status == ANB_OK)
+        *out = c.data;
+    else
+        anb_data_free(c.data);
     end(&c.base);
     return status;
 }
 
-/* ---- in blocks to a consumer ---------------------------------------------------------------------------------------- */
+/* ---- in blocks to a consumer
+ * ---------------------------------------------------------------------------------------- */
 
 typedef struct handing {
     sweeping base;
@@ -273,13 +290,16 @@ static anb_status hand_on(void *user, anb__block *block) {
     return h->consumer(h->user, block->payload, block->first);
 }
 
-anb_status anb_sweep_blocks(anb_context *context, const anb_netlist *netlist, const anb_sweep_options *options,
-                            anb_consumer *consumer, void *user) {
+anb_status anb_sweep_blocks(anb_context *context, const anb_netlist *netlist,
+                            const anb_sweep_options *options, anb_consumer *consumer, void *user) {
     handing h = {.consumer = consumer, .user = user};
     anb_status status = begin(&h.base, context, netlist, options);
     if (status == ANB_OK) status = compile(&h.base);
     if (status == ANB_OK) {
-        anb__job job = {.user = &h, .make_payload = block_data, .free_payload = free_data, .process = compute_block,
+        anb__job job = {.user = &h,
+                        .make_payload = block_data,
+                        .free_payload = free_data,
+                        .process = compute_block,
                         .deliver = hand_on};
         status = run(&h.base, &job);
     }
@@ -287,16 +307,20 @@ anb_status anb_sweep_blocks(anb_context *context, const anb_netlist *netlist, co
     return status;
 }
 
-/* ---- for the curious ---------------------------------------------------------------------------------------------------- */
+/* ---- for the curious
+ * ---------------------------------------------------------------------------------------------------- */
 
-anb_status anb_sweep_statistics(anb_context *context, const anb_netlist *netlist, const anb_sweep_options *options,
-                                anb_statistics *out) {
+anb_status anb_sweep_statistics(anb_context *context, const anb_netlist *netlist,
+                                const anb_sweep_options *options, anb_statistics *out) {
     sweeping s;
     *out = (anb_statistics){0};
     anb_status status = begin(&s, context, netlist, options);
     if (status == ANB_OK) status = compile(&s);
     if (status == ANB_OK) {
-        anb__job job = {.user = &s, .make_payload = block_data, .free_payload = free_data, .process = compute_block,
+        anb__job job = {.user = &s,
+                        .make_payload = block_data,
+                        .free_payload = free_data,
+                        .process = compute_block,
                         .deliver = only_progress};
         status = run(&s, &job);
     }
@@ -312,7 +336,9 @@ anb_status anb_sweep_statistics(anb_context *context, const anb_netlist *netlist
     return status;
 }
 
-/* ---- as text ---------------------------------------------------------------------------------------------------------------- */
+/* ---- as text
+ * ----------------------------------------------------------------------------------------------------------------
+ */
 
 typedef struct writing {
     sweeping base;
@@ -404,21 +430,25 @@ static anb_status write_end(writing *w, bool complete) {
     return status;
 }
 
-/* ---- references --------------------------------------------------------------------------------------------------------------- */
+/* ---- references
+ * ---------------------------------------------------------------------------------------------------------------
+ */
 
-/* The references to write at: those asked for, else the ports' own, of complex ones the real part. The network is then
- * computed at them, which is what renormalising its S-parameters gives. */
+/* The references to write at: those asked for, else the ports' own, of complex ones the real part. The
+ * network is then computed at them, which is what renormalising its S-parameters gives. */
 static void choose_references(anb__report *report, const anb_write_options *options, writing *w) {
     anb__network *network = &w->base.network;
     for (uint32_t k = 0; k < network->port_count; k++) {
         anb__complex z = network->ports[k].z;
         w->names[k] = network->ports[k].name;
-        w->reference[k] = options->reference_count ? options->reference[options->reference_count == 1 ? 0 : k] : z.re;
+        w->reference[k] =
+            options->reference_count ? options->reference[options->reference_count == 1 ? 0 : k] : z.re;
         w->base.ports[k].z = anb__cx(w->reference[k], 0);
         if (z.im == 0 || options->reference_count) continue;
-        anb__diagnostic *d = anb__warning(report, network->ports[k].span, "complex-reference",
-                                          "port `%s` has a complex reference, which no file can hold: it is written at its real part",
-                                          network->ports[k].name);
+        anb__diagnostic *d = anb__warning(
+            report, network->ports[k].span, "complex-reference",
+            "port `%s` has a complex reference, which no file can hold: it is written at its real part",
+            network->ports[k].name);
         anb__add_hint(report, d, "`--reference` chooses another one");
     }
     network->ports = w->base.ports;
@@ -448,8 +478,11 @@ static bool prepare_form(anb__report *report, void *user) {
     writing *w = p->w;
     if (!check_references(report, p->options, w)) return false;
     choose_references(report, p->options, w);
-    w->form = (anb__form){.ports = w->base.network.port_count, .points = w->base.netlist->grid.count,
-                          .reference = w->reference, .title = w->base.network.title, .source = w->base.netlist->path,
+    w->form = (anb__form){.ports = w->base.network.port_count,
+                          .points = w->base.netlist->grid.count,
+                          .reference = w->reference,
+                          .title = w->base.network.title,
+                          .source = w->base.netlist->path,
                           .names = w->names};
     return anb__form_check(report, p->options, &w->form);
 }
@@ -472,11 +505,16 @@ anb_status anb_sweep_write(anb_context *context, const anb_netlist *netlist, con
     if (status == ANB_OK) status = begin_writing(&w, options ? options : &defaults);
     if (status == ANB_OK) status = compile(&w.base);
     if (status == ANB_OK) {
-        anb__job job = {.user = &w, .make_payload = new_page, .free_payload = free_page, .process = compute_page,
+        anb__job job = {.user = &w,
+                        .make_payload = new_page,
+                        .free_payload = free_page,
+                        .process = compute_page,
                         .deliver = write_page};
         status = run(&w.base, &job);
-        if (status == ANB_OK) status = write_end(&w, true);
-        else if (w.begun && status != ANB_CLOSED && status != ANB_IO) write_end(&w, false);
+        if (status == ANB_OK)
+            status = write_end(&w, true);
+        else if (w.begun && status != ANB_CLOSED && status != ANB_IO)
+            write_end(&w, false);
     }
     free(w.reference);
     free(w.names);

@@ -1,11 +1,12 @@
+# shellcheck shell=bash disable=SC2034 # the lists are for those who source this
 # The Debian packages that building and testing need, and how they get here. To be sourced:
 #     . tests/packages.sh
 #     packages_install "$packages_build"
 # Quiet where nothing is missing; otherwise one line, and apt-get's own words only where it fails.
 
 packages_build="gcc libc6-dev make cmake re2c scdoc libsuitesparse-dev"
-packages_test="ninja-build g++ clang clang-tidy libclang-rt-14-dev llvm cppcheck valgrind pkg-config mandoc
-    binutils libcmocka-dev liblapacke-dev libopenblas-dev python3 python3-numpy python3-mpmath"
+packages_test="ninja-build g++ clang clang-tidy libclang-rt-14-dev llvm cppcheck shellcheck valgrind
+    pkg-config mandoc binutils libcmocka-dev liblapacke-dev libopenblas-dev python3 python3-numpy python3-mpmath"
 
 # Those of the given packages that are not installed, one to a line.
 packages_missing() {

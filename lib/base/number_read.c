@@ -1,6 +1,7 @@
-/* Text to the nearest double. The fast way takes the number's first 19 digits times a power of ten of 128 bits and
- * looks whether everything within the error of that product rounds alike (after D. Lemire, *Number parsing at a
- * gigabyte per second*, 2021); if not, the decimal is compared with the middle between two doubles in whole numbers. */
+/* Text to the nearest double. The fast way takes the number's first 19 digits times a power of ten of 128
+ * bits and looks whether everything within the error of that product rounds alike (after D. Lemire, *Number
+ * parsing at a gigabyte per second*, 2021); if not, the decimal is compared with the middle between two
+ * doubles in whole numbers. */
 #include <math.h>
 #include <stdbool.h>
 #include <stdint.h>
@@ -15,7 +16,7 @@ typedef unsigned __int128 wide;
 typedef struct decimal {
     uint64_t digits;
     long exponent;
-    bool more;        /* digits that are not zero follow */
+    bool more;         /* digits that are not zero follow */
     const char *first; /* the first significant digit's byte */
     const char *end;   /* of the digits */
     size_t length;     /* of the text, exponent included */
@@ -117,7 +118,8 @@ static bool read_fast(const decimal *d, double *value) {
     /* g is too large by less than 1 in 2^128, the digits too small by less than 1 in 2^64 >> shift */
     wide below = 3, above = d->more ? ((wide)1 << (66 + shift)) : 3;
     if (shift > 58 && d->more) return false;
-    double low = round_product(p - below, true, exponent), high = round_product(p + above < p ? ~(wide)0 : p + above, true, exponent);
+    double low = round_product(p - below, true, exponent),
+           high = round_product(p + above < p ? ~(wide)0 : p + above, true, exponent);
     *value = low;
     return low == high;
 }
@@ -191,16 +193,21 @@ static int against_middle(const decimal *d, double value) {
     int exponent;
     double mantissa = frexp(value, &exponent);
     exponent = exponent < -1021 ? -1074 : exponent - 53;
-    uint64_t c = value == 0 ? 0 : (uint64_t)ldexp(mantissa, (value == 0 ? 0 : (int)(ilogb(value) + 1) - exponent));
+    uint64_t c =
+        value == 0 ? 0 : (uint64_t)ldexp(mantissa, (value == 0 ? 0 : (int)(ilogb(value) + 1) - exponent));
     uint64_t middle = 2 * c + 1;
     right.word[0] = (uint32_t)middle;
     right.word[1] = (uint32_t)(middle >> 32);
     right.count = right.word[1] ? 2 : 1;
     exponent -= 1;
-    if (ten > 0) times_ten(&left, ten);
-    else times_ten(&right, -ten);
-    if (exponent > 0) times_two(&right, exponent);
-    else times_two(&left, -exponent);
+    if (ten > 0)
+        times_ten(&left, ten);
+    else
+        times_ten(&right, -ten);
+    if (exponent > 0)
+        times_two(&right, exponent);
+    else
+        times_two(&left, -exponent);
     return compare(&left, &right);
 }
 
@@ -229,8 +236,10 @@ size_t anb__number_read_scaled(const char *text, size_t length, int shift, doubl
     decimal d = scan(text, length);
     if (!d.length) return 0;
     d.exponent += shift;
-    if (!d.digits) *value = 0;
-    else if (!read_fast(&d, value)) *value = settle(&d, *value);
+    if (!d.digits)
+        *value = 0;
+    else if (!read_fast(&d, value))
+        *value = settle(&d, *value);
     return d.length;
 }
 

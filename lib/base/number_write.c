@@ -45,11 +45,12 @@ static decimal shortest(uint64_t fraction, unsigned biased) {
 
 /* ---- digits ------------------------------------------------------------------------------- */
 
-static const char pairs[201] = "0001020304050607080910111213141516171819202122232425262728293031323334353637383940414243444546474849"
-                               "5051525354555657585960616263646566676869707172737475767778798081828384858687888990919293949596979899";
+static const char pairs[201] =
+    "0001020304050607080910111213141516171819202122232425262728293031323334353637383940414243444546474849"
+    "5051525354555657585960616263646566676869707172737475767778798081828384858687888990919293949596979899";
 
-/* Eight digits with leading zeros, all at once: halves of four digits, then pairs, then single ones, each step a
- * multiplication by the inverse in fields of one word. */
+/* Eight digits with leading zeros, all at once: halves of four digits, then pairs, then single ones, each
+ * step a multiplication by the inverse in fields of one word. */
 static inline void put_eight(uint32_t n, char *to) {
     uint64_t x = n / 10000 | (uint64_t)(n % 10000) << 32;
     uint64_t hundreds = (x * 10486 >> 20) & 0x7F0000007Fu;
@@ -80,9 +81,26 @@ static inline int trailing_zeros(const char *digits) {
 enum { MOST_DIGITS = 17 };
 
 static inline int count_digits(uint64_t n) {
-    static const uint64_t powers[20] = {0, 10, 100, 1000, 10000, 100000, 1000000, 10000000, 100000000, 1000000000, 10000000000,
-                                        100000000000, 1000000000000, 10000000000000, 100000000000000, 1000000000000000,
-                                        10000000000000000, 100000000000000000, 1000000000000000000, 10000000000000000000u};
+    static const uint64_t powers[20] = {0,
+                                        10,
+                                        100,
+                                        1000,
+                                        10000,
+                                        100000,
+                                        1000000,
+                                        10000000,
+                                        100000000,
+                                        1000000000,
+                                        10000000000,
+                                        100000000000,
+                                        1000000000000,
+                                        10000000000000,
+                                        100000000000000,
+                                        1000000000000000,
+                                        10000000000000000,
+                                        100000000000000000,
+                                        1000000000000000000,
+                                        10000000000000000000u};
     int guess = ((64 - __builtin_clzll(n | 1)) * 1233) >> 12; /* log10(2) */
     return guess + (n >= powers[guess]);
 }
@@ -137,7 +155,8 @@ static size_t lay_out(const char *digits, int count, int point, char *to) {
     return (size_t)plain;
 }
 
-/* A number below 1 of few leading zeros, the most frequent case: all 17 digits are copied, whatever their count. */
+/* A number below 1 of few leading zeros, the most frequent case: all 17 digits are copied, whatever their
+ * count. */
 static inline size_t lay_out_small(const char *digits, int count, int point, char *to) {
     memcpy(to, "0.000", 5);
     memcpy(to + 2 - point, digits, MOST_DIGITS);
@@ -177,7 +196,8 @@ size_t anb__number_write(double value, char *buffer) {
     put_seventeen(d.digits, digits);
     int first = MOST_DIGITS - count_digits(d.digits), last = MOST_DIGITS - trailing_zeros(digits);
     int count = last - first, point = MOST_DIGITS - first + d.exponent;
-    if (point <= 0 && point >= -2) return (size_t)(to - buffer) + lay_out_small(digits + first, count, point, to);
+    if (point <= 0 && point >= -2)
+        return (size_t)(to - buffer) + lay_out_small(digits + first, count, point, to);
     size_t length = lay_out(digits + first, count, point, to);
     if (fabs(value) >= 9007199254740992.0 && (int)length == point) length = put_whole(fabs(value), to);
     return (size_t)(to - buffer) + length;
@@ -189,7 +209,8 @@ size_t anb__number_write_shifted(double value, int shift, char *buffer) {
     int count = 0, point = 0, exponent = 0;
     bool after_point = false;
     for (; i < length && plain[i] != 'e'; i++) {
-        if (plain[i] == '.') after_point = true;
+        if (plain[i] == '.')
+            after_point = true;
         else if (count || plain[i] != '0') {
             digits[count++] = plain[i];
             point += !after_point;

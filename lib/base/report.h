@@ -54,7 +54,7 @@ typedef struct anb__report {
     anb__sources sources;
     anb__diagnostic *first;
     anb__diagnostic *last;
-    unsigned errors;   /* counted beyond the limit too */
+    unsigned errors; /* counted beyond the limit too */
     unsigned warnings;
 } anb__report;
 
@@ -63,14 +63,12 @@ enum { ANB__ERROR_LIMIT = 20 };
 /* Adds a diagnostic and returns it, for anb__add_note and anb__add_hint.
  * One with the same code and span as an earlier one, and errors beyond the
  * limit, are counted or dropped, and a scratch diagnostic is returned. */
-anb__diagnostic *anb__error(anb__report *report, anb__span span, const char *code,
-                            const char *format, ...)
+anb__diagnostic *anb__error(anb__report *report, anb__span span, const char *code, const char *format, ...)
     __attribute__((format(printf, 4, 5)));
-anb__diagnostic *anb__warning(anb__report *report, anb__span span, const char *code,
-                              const char *format, ...)
+anb__diagnostic *anb__warning(anb__report *report, anb__span span, const char *code, const char *format, ...)
     __attribute__((format(printf, 4, 5)));
-void anb__add_note(anb__report *report, anb__diagnostic *diagnostic, anb__span span,
-                   const char *format, ...) __attribute__((format(printf, 4, 5)));
+void anb__add_note(anb__report *report, anb__diagnostic *diagnostic, anb__span span, const char *format, ...)
+    __attribute__((format(printf, 4, 5)));
 void anb__add_hint(anb__report *report, anb__diagnostic *diagnostic, const char *format, ...)
     __attribute__((format(printf, 3, 4)));
 
@@ -82,7 +80,8 @@ static inline anb__span anb__span_join(anb__span a, anb__span b) {
     return (anb__span){a.source, a.start, b.end};
 }
 
-/* Line and column, both from 1, columns in code points (a byte-order mark counts none), of a byte of a source. */
+/* Line and column, both from 1, columns in code points (a byte-order mark counts none), of a byte of a
+ * source. */
 void anb__place(const anb__source *source, uint32_t offset, uint32_t *line, uint32_t *column);
 
 #endif

@@ -168,7 +168,8 @@ bool anb__series_limit(const anb__series *a, anb__complex *out) {
 
 static double size_of(anb__complex c) { return fabs(c.re) + fabs(c.im); }
 
-anb__series anb__series_eliminate(const anb__series *a, const anb__series *m, const anb__series *b, double noise) {
+anb__series anb__series_eliminate(const anb__series *a, const anb__series *m, const anb__series *b,
+                                  double noise) {
     if (m->zero || b->zero) return *a;
     int order = m->order + b->order, end = order + least(m->terms, b->terms);
     anb__series out = {.order = order, .terms = ANB__SERIES_TERMS};

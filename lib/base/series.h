@@ -44,7 +44,8 @@ bool anb__series_log(const anb__series *a, anb__series *out);
 bool anb__series_compose(const anb__series *a, const anb__complex *t, anb__series *out);
 /* a - m b, for elimination: a coefficient that has cancelled to less than `noise` of what it was summed
  * from is zero. */
-anb__series anb__series_eliminate(const anb__series *a, const anb__series *m, const anb__series *b, double noise);
+anb__series anb__series_eliminate(const anb__series *a, const anb__series *m, const anb__series *b,
+                                  double noise);
 /* The limit at u = 0; false at a pole. */
 bool anb__series_limit(const anb__series *a, anb__complex *out);
 

@@ -12,7 +12,8 @@ typedef struct anb__text {
     bool failed; /* memory is gone: what was appended since is lost */
 } anb__text;
 
-/* Room for `size` more bytes at the end, for the caller to fill and to count in `length`; NULL when memory is gone. */
+/* Room for `size` more bytes at the end, for the caller to fill and to count in `length`; NULL when memory is
+ * gone. */
 char *anb__text_room(anb__text *text, size_t size);
 void anb__text_bytes(anb__text *text, const char *bytes, size_t length);
 void anb__text_string(anb__text *text, const char *string);

@@ -18,7 +18,9 @@ anb_data *anb__data_new(uint32_t ports, uint64_t points, bool symmetric) {
     data->elements = symmetric ? n * (n + 1) / 2 : n * n;
     data->frequencies = aligned(points, sizeof *data->frequencies);
     data->reference = calloc(n + 1, sizeof *data->reference);
-    data->s = groups <= SIZE_MAX / (data->elements + 1) ? aligned(groups * data->elements, ANB__GROUP * sizeof *data->s) : NULL;
+    data->s = groups <= SIZE_MAX / (data->elements + 1)
+                  ? aligned(groups * data->elements, ANB__GROUP * sizeof *data->s)
+                  : NULL;
     if (data->frequencies && data->reference && data->s) return data;
     anb_data_free(data);
     return NULL;

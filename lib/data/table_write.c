@@ -13,7 +13,8 @@ static void put_json_string(const char *string, anb__text *text) {
     for (; *string; string++) {
         unsigned char byte = (unsigned char)*string;
         char escape[] = {'\\', 'u', '0', '0', hex[byte >> 4], hex[byte & 15]};
-        if (byte < 0x20) anb__text_bytes(text, escape, sizeof escape);
+        if (byte < 0x20)
+            anb__text_bytes(text, escape, sizeof escape);
         else {
             if (byte == '"' || byte == '\\') anb__text_char(text, '\\');
             anb__text_char(text, (char)byte);
@@ -40,7 +41,8 @@ void anb__json_begin(const anb__form *form, anb__text *text) {
         if (k) anb__text_string(text, ", ");
         anb__text_number(text, form->reference[k]);
     }
-    anb__text_string(text, "],\n \"noise\": null,\n \"mixed_mode_order\": null,\n \"warnings\": [],\n \"matrices\": [");
+    anb__text_string(
+        text, "],\n \"noise\": null,\n \"mixed_mode_order\": null,\n \"warnings\": [],\n \"matrices\": [");
 }
 
 static char *put_json_matrix(const anb_data *data, const anb__pair_text *pairs, char *to) {
@@ -75,7 +77,8 @@ bool anb__json_block(const anb__form *form, const anb_data *data, uint64_t first
     return finite;
 }
 
-void anb__json_frequencies(const anb__form *form, const double *hz, uint64_t first, uint64_t count, anb__text *text) {
+void anb__json_frequencies(const anb__form *form, const double *hz, uint64_t first, uint64_t count,
+                           anb__text *text) {
     if (!first) anb__text_string(text, "],\n \"frequencies_hz\": [");
     for (uint64_t k = 0; k < count; k++) {
         if (first + k) anb__text_string(text, ", ");

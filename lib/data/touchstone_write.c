@@ -69,19 +69,22 @@ static void put_keywords(const anb__form *form, anb__text *text) {
 }
 
 void anb__touchstone_begin(const anb__form *form, anb__text *text) {
-    if (is_version_2(form)) anb__text_string(text, form->version == ANB__VERSION_2 ? "[Version] 2.0\n" : "[Version] 2.1\n");
+    if (is_version_2(form))
+        anb__text_string(text, form->version == ANB__VERSION_2 ? "[Version] 2.0\n" : "[Version] 2.1\n");
     put_comments(form, text);
     put_option_line(form, text);
     if (is_version_2(form)) put_keywords(form, text);
 }
 
-/* The order of one point's pairs: all on one line, 11 21 12 22, for two ports; else by rows, four to a line. */
+/* The order of one point's pairs: all on one line, 11 21 12 22, for two ports; else by rows, four to a line.
+ */
 static char *put_matrix(const anb_data *data, const anb__pair_text *pairs, char *to) {
     uint32_t n = data->ports;
     for (uint32_t row = 0; row < n; row++)
         for (uint32_t column = 0; column < n; column++) {
             bool breaks = n > 2 && (column ? column % PAIRS_A_LINE == 0 : row > 0);
-            const anb__pair_text *pair = &pairs[n == 2 ? anb__element(data, column, row) : anb__element(data, row, column)];
+            const anb__pair_text *pair =
+                &pairs[n == 2 ? anb__element(data, column, row) : anb__element(data, row, column)];
             *to++ = breaks ? '\n' : ' ';
             memcpy(to, pair->bytes, sizeof pair->bytes);
             to += pair->length;
@@ -106,6 +109,8 @@ bool anb__touchstone_block(const anb__form *form, const anb_data *data, anb__tex
 }
 
 void anb__touchstone_end(const anb__form *form, bool complete, anb__text *text) {
-    if (!complete) anb__text_string(text, "! incomplete\n");
-    else if (is_version_2(form)) anb__text_string(text, "[End]\n");
+    if (!complete)
+        anb__text_string(text, "! incomplete\n");
+    else if (is_version_2(form))
+        anb__text_string(text, "[End]\n");
 }

@@ -25,7 +25,8 @@ static bool read_version(anb__report *report, const anb_write_options *options, 
             form->version = (anb__version)i;
             return true;
         }
-    anb__diagnostic *d = anb__error(report, nowhere, "version", "there is no Touchstone version `%s`", options->version);
+    anb__diagnostic *d =
+        anb__error(report, nowhere, "version", "there is no Touchstone version `%s`", options->version);
     anb__add_hint(report, d, "1, 1.1, 2 or 2.1");
     return false;
 }
@@ -43,7 +44,8 @@ static bool read_unit(anb__report *report, const anb_write_options *options, anb
             form->unit_shift = units[i].shift;
             return true;
         }
-    anb__diagnostic *d = anb__error(report, nowhere, "frequency-unit", "`%s` is no unit of frequency", options->unit);
+    anb__diagnostic *d =
+        anb__error(report, nowhere, "frequency-unit", "`%s` is no unit of frequency", options->unit);
     anb__add_hint(report, d, "Hz, kHz, MHz or GHz");
     return false;
 }
@@ -58,8 +60,9 @@ bool anb__form_check(anb__report *report, const anb_write_options *options, anb_
         return false;
     }
     if (form->kind == ANB_TOUCHSTONE && form->version == ANB__VERSION_1 && !equal_references(form)) {
-        anb__diagnostic *d = anb__error(report, nowhere, "references",
-                                        "the ports have different references, and version 1 of Touchstone has one for all");
+        anb__diagnostic *d =
+            anb__error(report, nowhere, "references",
+                       "the ports have different references, and version 1 of Touchstone has one for all");
         anb__add_hint(report, d, "`--touchstone 2`, or `--reference 50ohm` to refer all ports to 50 ohm");
         return false;
     }
@@ -85,7 +88,8 @@ static inline size_t put_pair(const anb__form *form, anb__complex s, char betwee
     return length + anb__put_value(form, s.im, to + length);
 }
 
-bool anb__format_elements(const anb__form *form, const anb_data *data, uint64_t point, char between, anb__pair_text *out) {
+bool anb__format_elements(const anb__form *form, const anb_data *data, uint64_t point, char between,
+                          anb__pair_text *out) {
     bool finite = true;
     for (size_t e = 0; e < data->elements; e++) {
         anb__complex s = anb__s_at(data, point, e);
@@ -103,9 +107,12 @@ void anb__put_frequency(const anb__form *form, double hz, anb__text *text) {
 /* ---- by kind ------------------------------------------------------------------------------------------ */
 
 void anb__form_begin(const anb__form *form, anb__text *text) {
-    if (form->kind == ANB_TOUCHSTONE) anb__touchstone_begin(form, text);
-    else if (form->kind == ANB_JSON) anb__json_begin(form, text);
-    else anb__csv_begin(form, text);
+    if (form->kind == ANB_TOUCHSTONE)
+        anb__touchstone_begin(form, text);
+    else if (form->kind == ANB_JSON)
+        anb__json_begin(form, text);
+    else
+        anb__csv_begin(form, text);
 }
 
 bool anb__form_block(const anb__form *form, const anb_data *data, uint64_t first, anb__text *text) {
@@ -116,7 +123,8 @@ bool anb__form_block(const anb__form *form, const anb_data *data, uint64_t first
 
 bool anb__form_lists_frequencies(const anb__form *form) { return form->kind == ANB_JSON; }
 
-void anb__form_frequencies(const anb__form *form, const double *hz, uint64_t first, uint64_t count, anb__text *text) {
+void anb__form_frequencies(const anb__form *form, const double *hz, uint64_t first, uint64_t count,
+                           anb__text *text) {
     anb__json_frequencies(form, hz, first, count, text);
 }
 

@@ -31,7 +31,8 @@ typedef struct layout {
 
 static bool is_text(const layout *l, anb__token token, const char *word) {
     size_t length = token.end - token.start;
-    return token.kind == ANB__TOKEN_WORD && strlen(word) == length && !memcmp(l->text + token.start, word, length);
+    return token.kind == ANB__TOKEN_WORD && strlen(word) == length &&
+           !memcmp(l->text + token.start, word, length);
 }
 
 /* Stretches a unit over its quotient, `dB/m`, so that its slash is no division. */
@@ -40,7 +41,8 @@ static void take_quotient(const layout *l, anb__token *unit) {
     uint32_t end = unit->end + 1;
     if (unit->end >= l->length || l->text[unit->end] != '/') return;
     while (end < l->length && isalpha((unsigned char)l->text[end])) end++;
-    if (end > unit->end + 1 && anb__unit_find(l->text + unit->start, end - unit->start, &found)) unit->end = end;
+    if (end > unit->end + 1 && anb__unit_find(l->text + unit->start, end - unit->start, &found))
+        unit->end = end;
 }
 
 static const piece *last_piece(const layout *l) {
@@ -70,8 +72,9 @@ static bool is_closing(anb__token_kind kind) {
 
 /* Words that stand between values where the grammar expects them, and names elsewhere. */
 static bool is_infix_word(const layout *l, anb__token token) {
-    static const char *const words[] = {"at",     "over", "within", "on",     "in",  "points", "step",
-                                        "per",    "decade", "weight", "series", "from", "normal", "and", "or"};
+    static const char *const words[] = {"at",     "over", "within", "on",     "in",
+                                        "points", "step", "per",    "decade", "weight",
+                                        "series", "from", "normal", "and",    "or"};
     for (size_t i = 0; i < sizeof words / sizeof *words; i++)
         if (is_text(l, token, words[i])) return true;
     return false;
@@ -113,10 +116,25 @@ static bool is_unit(const layout *l, size_t k) {
            anb__unit_find(l->text + token.start, token.end - token.start, &unit);
 }
 
-/* Products and powers stand close, but for a division of something with a unit: `3 dB / m` is not `3 dB/m`. */
+/* Whether a unit, the slash at k and what follows would together be another unit. */
+static bool makes_a_unit(const layout *l, size_t k) {
+    char text[80];
+    anb__unit unit;
+    if (!is_unit(l, k - 1) || k + 1 >= l->count || l->pieces[k + 1].token.kind != ANB__TOKEN_WORD)
+        return false;
+    anb__token above = l->pieces[k - 1].token, below = l->pieces[k + 1].token;
+    size_t first = above.end - above.start, second = below.end - below.start;
+    if (first + second + 1 > sizeof text) return false;
+    memcpy(text, l->text + above.start, first);
+    text[first] = '/';
+    memcpy(text + first + 1, l->text + below.start, second);
+    return anb__unit_find(text, first + second + 1, &unit);
+}
+
+/* Products and powers stand close, but where blanks make a division: `3 dB / m` is not `3 dB/m`. */
 static bool is_close(const layout *l, size_t k) {
     anb__token_kind kind = l->pieces[k].token.kind;
-    if (kind == ANB__TOKEN_SLASH) return !k || !is_unit(l, k - 1);
+    if (kind == ANB__TOKEN_SLASH) return !k || !makes_a_unit(l, k);
     if (kind == ANB__TOKEN_PLUS || kind == ANB__TOKEN_MINUS) return in_index(l, k);
     return kind == ANB__TOKEN_STAR || kind == ANB__TOKEN_CARET || kind == ANB__TOKEN_DOT;
 }
@@ -129,7 +147,8 @@ static bool is_close_unit(const layout *l, size_t k) {
 static bool blank_before(const layout *l, size_t k) {
     if (!k) return false;
     anb__token_kind now = l->pieces[k].token.kind, before = l->pieces[k - 1].token.kind;
-    if (is_opening(before) || is_closing(now) || now == ANB__TOKEN_COMMA || now == ANB__TOKEN_COLON) return false;
+    if (is_opening(before) || is_closing(now) || now == ANB__TOKEN_COMMA || now == ANB__TOKEN_COLON)
+        return false;
     if (is_close(l, k) || is_close(l, k - 1) || is_unary(l, k - 1) || is_close_unit(l, k)) return false;
     return !is_opening(now) || !ends_operand(l, k - 1);
 }
@@ -138,7 +157,8 @@ static bool blank_before(const layout *l, size_t k) {
 static bool breaks_before(const layout *l, size_t k) {
     anb__token_kind now = l->pieces[k].token.kind;
     if (!k) return false;
-    return now == ANB__TOKEN_DASHES || now == ANB__TOKEN_BARS || l->pieces[k - 1].token.kind == ANB__TOKEN_COMMA;
+    return now == ANB__TOKEN_DASHES || now == ANB__TOKEN_BARS ||
+           l->pieces[k - 1].token.kind == ANB__TOKEN_COMMA;
 }
 
 /* ---- writing --------------------------------------------------------------------------------------- */
@@ -250,7 +270,9 @@ static anb__token after_comments(const layout *l, uint32_t *lines) {
 static bool ends_here(const layout *l, unsigned brackets) {
     uint32_t lines;
     anb__token next = after_comments(l, &lines);
-    if (next.kind == ANB__TOKEN_END || next.kind == ANB__TOKEN_SEMICOLON || next.kind == ANB__TOKEN_RIGHT_BRACE) return true;
+    if (next.kind == ANB__TOKEN_END || next.kind == ANB__TOKEN_SEMICOLON ||
+        next.kind == ANB__TOKEN_RIGHT_BRACE)
+        return true;
     return lines && !brackets && anb__may_end(l->text, last_piece(l)->token) && !anb__goes_on(l->text, next);
 }
 

@@ -2,9 +2,14 @@
 
 #include "language/parser.h"
 
-static void begin(anb__parser *p, anb__report *report, anb__names *names, anb__arena *arena, uint32_t source) {
+static void begin(anb__parser *p, anb__report *report, anb__names *names, anb__arena *arena,
+                  uint32_t source) {
     const anb__source *text = &report->sources.list[source];
-    *p = (anb__parser){.report = report, .names = names, .arena = arena, .text = text->text, .length = text->length,
+    *p = (anb__parser){.report = report,
+                       .names = names,
+                       .arena = arena,
+                       .text = text->text,
+                       .length = text->length,
                        .source = source};
     anb__reader_start(p, 0);
 }
@@ -43,7 +48,8 @@ anb__tree *anb__parse_override(anb__report *report, anb__names *names, anb__aren
     return tree;
 }
 
-anb__tree *anb__parse_sweep_override(anb__report *report, anb__names *names, anb__arena *arena, uint32_t source) {
+anb__tree *anb__parse_sweep_override(anb__report *report, anb__names *names, anb__arena *arena,
+                                     uint32_t source) {
     anb__parser p;
     begin(&p, report, names, arena, source);
     anb__tree *tree = anb__parse_sweep_of(&p, anb__new_tree(&p, ANB__TREE_SWEEP, p.now.start));

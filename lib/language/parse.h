@@ -12,6 +12,7 @@ anb__tree *anb__parse(anb__report *report, anb__names *names, anb__arena *arena,
 anb__tree *anb__parse_override(anb__report *report, anb__names *names, anb__arena *arena, uint32_t source);
 
 /* What follows the word `sweep`, as a SWEEP. */
-anb__tree *anb__parse_sweep_override(anb__report *report, anb__names *names, anb__arena *arena, uint32_t source);
+anb__tree *anb__parse_sweep_override(anb__report *report, anb__names *names, anb__arena *arena,
+                                     uint32_t source);
 
 #endif

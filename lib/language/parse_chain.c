@@ -9,9 +9,11 @@ static anb__tree *labelled(anb__parser *p) {
     anb__advance(p);
     anb__add_child(tree, value);
     if (anb__is_word(p, "shunt")) {
-        anb__diagnostic *d = anb__mistake(p, anb__span_at(p, value->span.start, p->now.end), "label-before-shunt",
-                                          "a label stands behind `shunt`, not before it");
-        anb__hint(p, d, "`shunt %.*s: ...`", (int)(value->span.end - value->span.start), p->text + value->span.start);
+        anb__diagnostic *d =
+            anb__mistake(p, anb__span_at(p, value->span.start, p->now.end), "label-before-shunt",
+                         "a label stands behind `shunt`, not before it");
+        anb__hint(p, d, "`shunt %.*s: ...`", (int)(value->span.end - value->span.start),
+                  p->text + value->span.start);
         return anb__end_tree(p, tree);
     }
     anb__add_child(tree, anb__parse_range(p));

@@ -25,9 +25,11 @@ static bool take_name(anb__parser *p, anb__tree *tree) {
     if (!anb__is_name(p)) {
         bool reserved = p->now.kind == ANB__TOKEN_WORD && anb__is_reserved(p, p->now);
         if (reserved)
-            anb__mistake(p, anb__span_of(p, p->now), "reserved", "`%.*s` is a word of the language and cannot be a name",
+            anb__mistake(p, anb__span_of(p, p->now), "reserved",
+                         "`%.*s` is a word of the language and cannot be a name",
                          (int)(p->now.end - p->now.start), p->text + p->now.start);
-        else anb__expected(p, "a name");
+        else
+            anb__expected(p, "a name");
         return false;
     }
     anb__set_name(p, tree, p->now);
@@ -54,13 +56,17 @@ static anb__tree *block(anb__parser *p) {
     if (anb__deepen(p, open)) {
         anb__advance(p);
         while (p->now.kind != ANB__TOKEN_RIGHT_BRACE && p->now.kind != ANB__TOKEN_END) {
-            if (p->now.kind == ANB__TOKEN_LINE || p->now.kind == ANB__TOKEN_SEMICOLON) anb__advance(p);
-            else anb__add_child(tree, anb__parse_statement(p));
+            if (p->now.kind == ANB__TOKEN_LINE || p->now.kind == ANB__TOKEN_SEMICOLON)
+                anb__advance(p);
+            else
+                anb__add_child(tree, anb__parse_statement(p));
         }
-        if (p->now.kind == ANB__TOKEN_RIGHT_BRACE) anb__advance(p);
+        if (p->now.kind == ANB__TOKEN_RIGHT_BRACE)
+            anb__advance(p);
         else
-            anb__hint(p, anb__mistake(p, anb__span_at(p, open, open + 1), "open-brace", "this `{` is not closed"),
-                      "close it with `}`");
+            anb__hint(
+                p, anb__mistake(p, anb__span_at(p, open, open + 1), "open-brace", "this `{` is not closed"),
+                "close it with `}`");
     }
     anb__rise(p);
     return anb__end_tree(p, tree);
@@ -122,8 +128,8 @@ static bool is_own_kind(const anb__parser *p) {
         at = token.end;
         if (token.kind == ANB__TOKEN_LEFT_PARENTHESIS) depth++;
         if (token.kind == ANB__TOKEN_RIGHT_PARENTHESIS) depth--;
-        if (token.kind == ANB__TOKEN_END || token.kind == ANB__TOKEN_DASHES || token.kind == ANB__TOKEN_SEMICOLON ||
-            token.kind == ANB__TOKEN_LEFT_BRACE)
+        if (token.kind == ANB__TOKEN_END || token.kind == ANB__TOKEN_DASHES ||
+            token.kind == ANB__TOKEN_SEMICOLON || token.kind == ANB__TOKEN_LEFT_BRACE)
             return false;
         if (depth) continue;
         token = anb__lex(look.text, look.length, at, false);
@@ -154,10 +160,14 @@ static anb__tree *tune(anb__parser *p, uint32_t start) {
     if (!take_name(p, tree) || !take(p, ANB__TOKEN_IS, "`=`")) return tree;
     anb__add_child(tree, anb__parse_sum(p));
     while (!p->failed) {
-        if (anb__is_word(p, "within")) anb__add_child(tree, after_word(p, ANB__TREE_TUNE_WITHIN, anb__parse_range));
-        else if (anb__is_word(p, "series")) anb__add_child(tree, after_word(p, ANB__TREE_TUNE_SERIES, anb__parse_name_or_node));
-        else if (anb__is_word(p, "from")) anb__add_child(tree, after_word(p, ANB__TREE_TUNE_FROM, anb__parse_primary));
-        else break;
+        if (anb__is_word(p, "within"))
+            anb__add_child(tree, after_word(p, ANB__TREE_TUNE_WITHIN, anb__parse_range));
+        else if (anb__is_word(p, "series"))
+            anb__add_child(tree, after_word(p, ANB__TREE_TUNE_SERIES, anb__parse_name_or_node));
+        else if (anb__is_word(p, "from"))
+            anb__add_child(tree, after_word(p, ANB__TREE_TUNE_FROM, anb__parse_primary));
+        else
+            break;
     }
     return anb__end_tree(p, tree);
 }
@@ -287,13 +297,16 @@ static anb__tree *if_else(anb__parser *p, uint32_t start) {
     if (!p->failed) anb__add_child(tree, block(p));
     if (p->failed || !anb__is_word(p, "else")) return anb__end_tree(p, tree);
     anb__advance(p);
-    if (!anb__is_word(p, "if")) anb__add_child(tree, block(p));
-    else if (anb__deepen(p, p->now.start)) anb__add_child(tree, if_else(p, p->now.start));
+    if (!anb__is_word(p, "if"))
+        anb__add_child(tree, block(p));
+    else if (anb__deepen(p, p->now.start))
+        anb__add_child(tree, if_else(p, p->now.start));
     if (tree->last->kind == ANB__TREE_IF) anb__rise(p);
     return anb__end_tree(p, tree);
 }
 
-/* ---- sweeps and what is asked of the result ---------------------------------------------------------------- */
+/* ---- sweeps and what is asked of the result
+ * ---------------------------------------------------------------- */
 
 static anb__tree *sweep_at(anb__parser *p) {
     anb__tree *tree = anb__new_tree(p, ANB__TREE_SWEEP_AT, p->now.start);
@@ -320,10 +333,14 @@ anb__tree *anb__parse_sweep_of(anb__parser *p, anb__tree *sweep) {
     }
     anb__add_child(sweep, anb__parse_range(p));
     if (p->failed) return sweep;
-    if (anb__is_word(p, "points")) anb__add_child(sweep, after_word(p, ANB__TREE_POINTS, anb__parse_sum));
-    else if (anb__is_word(p, "step")) anb__add_child(sweep, after_word(p, ANB__TREE_STEP, anb__parse_sum));
-    else if (anb__is_word(p, "per")) anb__add_child(sweep, per_decade(p));
-    else anb__expected(p, "`points`, `step` or `per decade`");
+    if (anb__is_word(p, "points"))
+        anb__add_child(sweep, after_word(p, ANB__TREE_POINTS, anb__parse_sum));
+    else if (anb__is_word(p, "step"))
+        anb__add_child(sweep, after_word(p, ANB__TREE_STEP, anb__parse_sum));
+    else if (anb__is_word(p, "per"))
+        anb__add_child(sweep, per_decade(p));
+    else
+        anb__expected(p, "`points`, `step` or `per decade`");
     return anb__end_tree(p, sweep);
 }
 
@@ -334,10 +351,14 @@ static anb__tree *sweep(anb__parser *p, uint32_t start) {
 }
 
 static void require_limit(anb__parser *p, anb__tree *tree) {
-    if (p->now.kind == ANB__TOKEN_GREATER_EQUAL) anb__add_child(tree, after_word(p, ANB__TREE_AT_LEAST, anb__parse_sum));
-    else if (p->now.kind == ANB__TOKEN_LESS_EQUAL) anb__add_child(tree, after_word(p, ANB__TREE_AT_MOST, anb__parse_sum));
-    else if (anb__is_word(p, "within")) anb__add_child(tree, after_word(p, ANB__TREE_WITHIN, anb__parse_range));
-    else anb__expected(p, "`>=`, `<=` or `within`");
+    if (p->now.kind == ANB__TOKEN_GREATER_EQUAL)
+        anb__add_child(tree, after_word(p, ANB__TREE_AT_LEAST, anb__parse_sum));
+    else if (p->now.kind == ANB__TOKEN_LESS_EQUAL)
+        anb__add_child(tree, after_word(p, ANB__TREE_AT_MOST, anb__parse_sum));
+    else if (anb__is_word(p, "within"))
+        anb__add_child(tree, after_word(p, ANB__TREE_WITHIN, anb__parse_range));
+    else
+        anb__expected(p, "`>=`, `<=` or `within`");
 }
 
 static anb__tree *require(anb__parser *p, uint32_t start) {
@@ -345,9 +366,12 @@ static anb__tree *require(anb__parser *p, uint32_t start) {
     anb__advance(p);
     anb__add_child(tree, anb__parse_sum(p));
     if (!p->failed) require_limit(p, tree);
-    if (!p->failed && anb__is_word(p, "over")) anb__add_child(tree, after_word(p, ANB__TREE_OVER, anb__parse_range));
-    else if (!p->failed && anb__is_word(p, "at")) anb__add_child(tree, after_word(p, ANB__TREE_AT_FREQUENCY, anb__parse_sum));
-    if (!p->failed && anb__is_word(p, "weight")) anb__add_child(tree, after_word(p, ANB__TREE_WEIGHT, anb__parse_sum));
+    if (!p->failed && anb__is_word(p, "over"))
+        anb__add_child(tree, after_word(p, ANB__TREE_OVER, anb__parse_range));
+    else if (!p->failed && anb__is_word(p, "at"))
+        anb__add_child(tree, after_word(p, ANB__TREE_AT_FREQUENCY, anb__parse_sum));
+    if (!p->failed && anb__is_word(p, "weight"))
+        anb__add_child(tree, after_word(p, ANB__TREE_WEIGHT, anb__parse_sum));
     return anb__end_tree(p, tree);
 }
 
@@ -364,7 +388,8 @@ static anb__tree *drive(anb__parser *p, uint32_t start) {
     return anb__end_tree(p, tree);
 }
 
-/* ---- by the first word ------------------------------------------------------------------------------------- */
+/* ---- by the first word
+ * ------------------------------------------------------------------------------------- */
 
 static anb__tree *quoted(anb__parser *p, anb__tree_kind kind, uint32_t start, const char *what) {
     anb__tree *tree = anb__new_tree(p, kind, start);
@@ -377,7 +402,9 @@ static anb__tree *quoted(anb__parser *p, anb__tree_kind kind, uint32_t start, co
     return anb__end_tree(p, tree);
 }
 
-static anb__tree *title(anb__parser *p, uint32_t start) { return quoted(p, ANB__TREE_TITLE, start, "a title in quotes"); }
+static anb__tree *title(anb__parser *p, uint32_t start) {
+    return quoted(p, ANB__TREE_TITLE, start, "a title in quotes");
+}
 static anb__tree *include(anb__parser *p, uint32_t start) {
     return quoted(p, ANB__TREE_INCLUDE, start, "a file's name in quotes");
 }
@@ -386,9 +413,10 @@ static anb__tree *any_statement(anb__parser *p) {
     static const struct {
         const char *word;
         anb__tree *(*rule)(anb__parser *p, uint32_t start);
-    } rules[] = {{"title", title}, {"include", include}, {"network", network}, {"port", port},     {"join", join},
-                 {"for", for_loop}, {"if", if_else},      {"sweep", sweep},     {"require", require}, {"tune", tune},
-                 {"shared", shared}, {"assume", assume},  {"cases", cases},     {"drive", drive}};
+    } rules[] = {{"title", title},     {"include", include}, {"network", network}, {"port", port},
+                 {"join", join},       {"for", for_loop},    {"if", if_else},      {"sweep", sweep},
+                 {"require", require}, {"tune", tune},       {"shared", shared},   {"assume", assume},
+                 {"cases", cases},     {"drive", drive}};
     uint32_t start = p->now.start;
     for (size_t i = 0; i < sizeof rules / sizeof *rules; i++)
         if (anb__is_word(p, rules[i].word)) return rules[i].rule(p, start);
@@ -396,15 +424,17 @@ static anb__tree *any_statement(anb__parser *p) {
         anb__mistake(p, anb__span_of(p, p->now), "lonely-else", "this `else` belongs to no `if`");
         return anb__new_tree(p, ANB__TREE_ERROR, start);
     }
-    if (anb__is_name(p) && anb__peek(p) == ANB__TOKEN_IS) return define(p, anb__new_tree(p, ANB__TREE_DEFINE, start));
+    if (anb__is_name(p) && anb__peek(p) == ANB__TOKEN_IS)
+        return define(p, anb__new_tree(p, ANB__TREE_DEFINE, start));
     return is_own_kind(p) ? own_kind(p, start) : path_or_place(p, start);
 }
 
-/* ---- recovery -------------------------------------------------------------------------------------------------- */
+/* ---- recovery
+ * -------------------------------------------------------------------------------------------------- */
 
 static bool at_end(const anb__parser *p) {
-    return p->now.kind == ANB__TOKEN_LINE || p->now.kind == ANB__TOKEN_SEMICOLON || p->now.kind == ANB__TOKEN_END ||
-           p->now.kind == ANB__TOKEN_RIGHT_BRACE;
+    return p->now.kind == ANB__TOKEN_LINE || p->now.kind == ANB__TOKEN_SEMICOLON ||
+           p->now.kind == ANB__TOKEN_END || p->now.kind == ANB__TOKEN_RIGHT_BRACE;
 }
 
 /* To the end of the statement: its line, or the block that it has begun. */
@@ -428,8 +458,10 @@ static bool keeps_its_name(const anb__tree *tree) {
     case ANB__TREE_KIND:
     case ANB__TREE_TUNE:
     case ANB__TREE_CASES:
-    case ANB__TREE_NETWORK: return tree->name != NULL;
-    default: return false;
+    case ANB__TREE_NETWORK:
+        return tree->name != NULL;
+    default:
+        return false;
     }
 }
 
@@ -454,10 +486,13 @@ anb__tree *anb__parse_statement(anb__parser *p) {
     if (!p->failed && !at_end(p)) anb__expected(p, "the end of the statement");
     if (p->failed) {
         skip_statement(p);
-        if (keeps_its_name(tree)) complete(p, tree);
-        else tree->kind = ANB__TREE_ERROR;
+        if (keeps_its_name(tree))
+            complete(p, tree);
+        else
+            tree->kind = ANB__TREE_ERROR;
     }
-    if (p->now.start == start && p->now.kind != ANB__TOKEN_END && p->now.kind != ANB__TOKEN_RIGHT_BRACE) anb__advance(p);
+    if (p->now.start == start && p->now.kind != ANB__TOKEN_END && p->now.kind != ANB__TOKEN_RIGHT_BRACE)
+        anb__advance(p);
     p->failed = failed_before;
     return tree;
 }

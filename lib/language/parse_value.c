@@ -82,8 +82,10 @@ static anb__tree *word_value(anb__parser *p) {
     static const struct {
         const char *word;
         anb__tree_kind kind;
-    } words[] = {{"pi", ANB__TREE_PI},         {"j", ANB__TREE_J},       {"c0", ANB__TREE_C0},      {"frequency", ANB__TREE_FREQUENCY},
-                 {"ground", ANB__TREE_GROUND}, {"open", ANB__TREE_OPEN}, {"short", ANB__TREE_SHORT}};
+    } words[] = {{"pi", ANB__TREE_PI},         {"j", ANB__TREE_J},
+                 {"c0", ANB__TREE_C0},         {"frequency", ANB__TREE_FREQUENCY},
+                 {"ground", ANB__TREE_GROUND}, {"open", ANB__TREE_OPEN},
+                 {"short", ANB__TREE_SHORT}};
     for (size_t i = 0; i < sizeof words / sizeof *words; i++) {
         if (!anb__is_word(p, words[i].word)) continue;
         anb__tree *tree = anb__new_tree(p, words[i].kind, p->now.start);
@@ -95,12 +97,18 @@ static anb__tree *word_value(anb__parser *p) {
 
 anb__tree *anb__parse_primary(anb__parser *p) {
     switch (p->now.kind) {
-    case ANB__TOKEN_NUMBER: return anb__parse_number(p);
-    case ANB__TOKEN_STRING: return string(p);
-    case ANB__TOKEN_LEFT_PARENTHESIS: return group(p);
-    case ANB__TOKEN_LEFT_BRACKET: return list(p);
-    case ANB__TOKEN_WORD: return word_value(p);
-    default: return anb__expected(p, "a value or a part");
+    case ANB__TOKEN_NUMBER:
+        return anb__parse_number(p);
+    case ANB__TOKEN_STRING:
+        return string(p);
+    case ANB__TOKEN_LEFT_PARENTHESIS:
+        return group(p);
+    case ANB__TOKEN_LEFT_BRACKET:
+        return list(p);
+    case ANB__TOKEN_WORD:
+        return word_value(p);
+    default:
+        return anb__expected(p, "a value or a part");
     }
 }
 
@@ -127,9 +135,12 @@ static anb__tree *member(anb__parser *p, anb__tree *base) {
 /* An index or a member belongs to what stands right before it; on a new line it does not. */
 static anb__tree *postfix(anb__parser *p, anb__tree *base) {
     while (!p->failed) {
-        if (p->now.kind == ANB__TOKEN_LEFT_BRACKET && !p->now.lines) base = index_of(p, base);
-        else if (p->now.kind == ANB__TOKEN_DOT) base = member(p, base);
-        else break;
+        if (p->now.kind == ANB__TOKEN_LEFT_BRACKET && !p->now.lines)
+            base = index_of(p, base);
+        else if (p->now.kind == ANB__TOKEN_DOT)
+            base = member(p, base);
+        else
+            break;
     }
     return base;
 }
@@ -186,13 +197,16 @@ static anb__tree *sign(anb__parser *p) {
 }
 
 /* `1/2 ohm`: half an ohm, or half a siemens? */
-static void check_quotient(anb__parser *p, const anb__tree *quotient, const anb__tree *left, const anb__tree *right) {
+static void check_quotient(anb__parser *p, const anb__tree *quotient, const anb__tree *left,
+                           const anb__tree *right) {
     if (p->failed || !is_plain(left) || !has_unit(right)) return;
     const char *l = p->text + left->span.start, *r = p->text + right->span.start;
     anb__token number = anb__lex(p->text, right->span.end, right->span.start, false);
-    anb__diagnostic *d = anb__mistake(p, quotient->span, "two-readings", "`%.*s` has two readings", length_of(quotient), l);
-    anb__hint(p, d, "`(%.*s/%.*s)*1 %s`, or `%.*s/(%.*s)`", length_of(left), l, (int)(number.end - number.start), r,
-              right->unit->name, length_of(left), l, length_of(right), r);
+    anb__diagnostic *d =
+        anb__mistake(p, quotient->span, "two-readings", "`%.*s` has two readings", length_of(quotient), l);
+    anb__hint(p, d, "`(%.*s/%.*s)*1 %s`, or `%.*s/(%.*s)`", length_of(left), l,
+              (int)(number.end - number.start), r, right->unit->name, length_of(left), l, length_of(right),
+              r);
 }
 
 static anb__tree *product(anb__parser *p) {
@@ -237,7 +251,8 @@ anb__tree *anb__parse_range(anb__parser *p) {
     return binary(p, low, ANB__TREE_RANGE, anb__parse_at_value);
 }
 
-/* ---- conditions -------------------------------------------------------------------------------------------- */
+/* ---- conditions
+ * -------------------------------------------------------------------------------------------- */
 
 static bool is_condition(const anb__tree *tree) {
     return (tree->kind >= ANB__TREE_LESS && tree->kind <= ANB__TREE_NOT) ||
@@ -245,17 +260,16 @@ static bool is_condition(const anb__tree *tree) {
 }
 
 static anb__tree *compare(anb__parser *p, anb__tree *left) {
-    static const anb__tree_kind kinds[] = {[ANB__TOKEN_LESS] = ANB__TREE_LESS,
-                                           [ANB__TOKEN_LESS_EQUAL] = ANB__TREE_LESS_EQUAL,
-                                           [ANB__TOKEN_GREATER] = ANB__TREE_GREATER,
-                                           [ANB__TOKEN_GREATER_EQUAL] = ANB__TREE_GREATER_EQUAL,
-                                           [ANB__TOKEN_EQUAL] = ANB__TREE_EQUAL,
-                                           [ANB__TOKEN_NOT_EQUAL] = ANB__TREE_NOT_EQUAL};
+    static const anb__tree_kind kinds[] = {
+        [ANB__TOKEN_LESS] = ANB__TREE_LESS,       [ANB__TOKEN_LESS_EQUAL] = ANB__TREE_LESS_EQUAL,
+        [ANB__TOKEN_GREATER] = ANB__TREE_GREATER, [ANB__TOKEN_GREATER_EQUAL] = ANB__TREE_GREATER_EQUAL,
+        [ANB__TOKEN_EQUAL] = ANB__TREE_EQUAL,     [ANB__TOKEN_NOT_EQUAL] = ANB__TREE_NOT_EQUAL};
     if (p->failed || p->now.kind < ANB__TOKEN_LESS_EQUAL || p->now.kind > ANB__TOKEN_GREATER) return left;
     return binary(p, left, kinds[p->now.kind], anb__parse_sum);
 }
 
-/* A condition in parentheses, or arithmetic that begins with some: tried as the former, taken back if it is none. */
+/* A condition in parentheses, or arithmetic that begins with some: tried as the former, taken back if it is
+ * none. */
 static anb__tree *parenthesised(anb__parser *p) {
     anb__parser before = *p;
     unsigned errors = p->report->errors;

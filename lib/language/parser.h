@@ -18,7 +18,7 @@ typedef struct anb__parser {
     uint32_t read_to; /* bytes that the lexer has passed */
     anb__token held;  /* comes after `now`, where `now` is a line end */
     bool has_held;
-    uint32_t end_before; /* of the token before `now` */
+    uint32_t end_before;                  /* of the token before `now` */
     uint32_t open[ANB__MOST_NESTING + 2]; /* starts of the ( and [ that are open */
     unsigned open_count;
     /* the parser */
@@ -55,7 +55,8 @@ void anb__set_name(anb__parser *p, anb__tree *tree, anb__token word);
 /* The one mistake of a statement; later ones are not told. */
 anb__diagnostic *anb__mistake(anb__parser *p, anb__span span, const char *code, const char *format, ...)
     __attribute__((format(printf, 4, 5)));
-void anb__hint(anb__parser *p, anb__diagnostic *mistake, const char *format, ...) __attribute__((format(printf, 3, 4)));
+void anb__hint(anb__parser *p, anb__diagnostic *mistake, const char *format, ...)
+    __attribute__((format(printf, 3, 4)));
 /* `expected` is missing at the token that is looked at, or that token can stand nowhere. Returns an ERROR. */
 anb__tree *anb__expected(anb__parser *p, const char *expected);
 /* One level deeper; false, told, beyond the limit. */

@@ -6,16 +6,17 @@
 #include "language/parser.h"
 #include "language/reader.h"
 
-static const char *const statement_words[] = {"title",   "include", "network", "port",   "join",  "for",
-                                              "if",      "sweep",   "require", "tune",   "shared", "assume",
-                                              "cases",   "drive",   NULL};
+static const char *const statement_words[] = {"title",  "include", "network", "port",    "join",
+                                              "for",    "if",      "sweep",   "require", "tune",
+                                              "shared", "assume",  "cases",   "drive",   NULL};
 static const char *const other_reserved[] = {"else", "shunt", "and", "or", "not", NULL};
 /* Reserved words that are whole values or nodes: a line may end after them. */
 static const char *const value_words[] = {"ground", "open", "short", "pi", "j", "c0", "frequency", NULL};
 
 static bool is_text(const char *text, anb__token token, const char *word) {
     size_t length = token.end - token.start;
-    return token.kind == ANB__TOKEN_WORD && strlen(word) == length && !memcmp(text + token.start, word, length);
+    return token.kind == ANB__TOKEN_WORD && strlen(word) == length &&
+           !memcmp(text + token.start, word, length);
 }
 
 static bool is_one_of(const char *text, anb__token token, const char *const *words) {
@@ -47,15 +48,18 @@ bool anb__may_end(const char *text, anb__token token) {
     case ANB__TOKEN_STRING:
     case ANB__TOKEN_RIGHT_PARENTHESIS:
     case ANB__TOKEN_RIGHT_BRACKET:
-    case ANB__TOKEN_RIGHT_BRACE: return true;
-    case ANB__TOKEN_WORD: return !is_reserved(text, token) || is_one_of(text, token, value_words);
-    default: return false;
+    case ANB__TOKEN_RIGHT_BRACE:
+        return true;
+    case ANB__TOKEN_WORD:
+        return !is_reserved(text, token) || is_one_of(text, token, value_words);
+    default:
+        return false;
     }
 }
 
 bool anb__goes_on(const char *text, anb__token token) {
-    return token.kind == ANB__TOKEN_DASHES || token.kind == ANB__TOKEN_BARS || token.kind == ANB__TOKEN_LEFT_BRACE ||
-           is_text(text, token, "else");
+    return token.kind == ANB__TOKEN_DASHES || token.kind == ANB__TOKEN_BARS ||
+           token.kind == ANB__TOKEN_LEFT_BRACE || is_text(text, token, "else");
 }
 
 /* A statement's word begins a line while a bracket is open: the bracket is what is wrong. */
@@ -98,7 +102,8 @@ void anb__advance(anb__parser *p) {
         put_line_end(p, next, before.end);
         return;
     }
-    if (next.lines && !p->open_count && anb__may_end(p->text, before) && !anb__goes_on(p->text, next) && next.kind != ANB__TOKEN_END) {
+    if (next.lines && !p->open_count && anb__may_end(p->text, before) && !anb__goes_on(p->text, next) &&
+        next.kind != ANB__TOKEN_END) {
         put_line_end(p, next, before.end);
         return;
     }
@@ -137,8 +142,10 @@ anb__tree *anb__end_tree(anb__parser *p, anb__tree *tree) {
 }
 
 void anb__add_child(anb__tree *parent, anb__tree *child) {
-    if (parent->last) parent->last->next = child;
-    else parent->first = child;
+    if (parent->last)
+        parent->last->next = child;
+    else
+        parent->first = child;
     parent->last = child;
 }
 
@@ -183,9 +190,14 @@ static void report_character(anb__parser *p) {
         anb__hint(p, anb__mistake(p, span, "open-string", "this string has no end on its line"),
                   "end it with `\"`; inside, `\\\"` and `\\\\` are the only escapes");
         break;
-    case ANB__TOKEN_NUL: anb__mistake(p, span, "nul", "a byte of value 0 may not stand in a netlist"); break;
-    case ANB__TOKEN_BROKEN: anb__mistake(p, span, "encoding", "this is not UTF-8"); break;
-    default: anb__mistake(p, span, "character", "`%.*s` means nothing in this language", length, at);
+    case ANB__TOKEN_NUL:
+        anb__mistake(p, span, "nul", "a byte of value 0 may not stand in a netlist");
+        break;
+    case ANB__TOKEN_BROKEN:
+        anb__mistake(p, span, "encoding", "this is not UTF-8");
+        break;
+    default:
+        anb__mistake(p, span, "character", "`%.*s` means nothing in this language", length, at);
     }
 }
 
@@ -199,22 +211,25 @@ static void report_expected(anb__parser *p, const char *expected) {
         anb__mistake(p, span, "expected", "%s is expected here, at the end", expected);
         break;
     default:
-        anb__mistake(p, span, "expected", "%s is expected here, not `%.*s`", expected, (int)(span.end - span.start),
-                     p->text + span.start);
+        anb__mistake(p, span, "expected", "%s is expected here, not `%.*s`", expected,
+                     (int)(span.end - span.start), p->text + span.start);
     }
 }
 
 anb__tree *anb__expected(anb__parser *p, const char *expected) {
     anb__tree *tree = anb__new_tree(p, ANB__TREE_ERROR, p->now.start);
     tree->span.end = p->now.end;
-    if (p->now.kind >= ANB__TOKEN_OPEN_STRING) report_character(p);
-    else report_expected(p, expected);
+    if (p->now.kind >= ANB__TOKEN_OPEN_STRING)
+        report_character(p);
+    else
+        report_expected(p, expected);
     return tree;
 }
 
 bool anb__deepen(anb__parser *p, uint32_t start) {
     if (p->nesting++ < ANB__MOST_NESTING) return true;
-    anb__mistake(p, anb__span_at(p, start, start + 1), "nesting", "this is nested more than 200 deep, the limit");
+    anb__mistake(p, anb__span_at(p, start, start + 1), "nesting",
+                 "this is nested more than 200 deep, the limit");
     return false;
 }
 
@@ -226,10 +241,14 @@ void anb__close(anb__parser *p, anb__token_kind kind, uint32_t open) {
         anb__advance(p);
         return;
     }
-    bool over = p->now.kind == ANB__TOKEN_LINE || p->now.kind == ANB__TOKEN_END || p->now.kind == ANB__TOKEN_SEMICOLON ||
-                p->now.kind == ANB__TOKEN_RIGHT_BRACE || p->now.kind == ANB__TOKEN_LEFT_BRACE;
+    bool over = p->now.kind == ANB__TOKEN_LINE || p->now.kind == ANB__TOKEN_END ||
+                p->now.kind == ANB__TOKEN_SEMICOLON || p->now.kind == ANB__TOKEN_RIGHT_BRACE ||
+                p->now.kind == ANB__TOKEN_LEFT_BRACE;
     if (over)
-        anb__hint(p, anb__mistake(p, anb__span_at(p, open, open + 1), "open-bracket", "this `%c` is not closed", p->text[open]),
+        anb__hint(p,
+                  anb__mistake(p, anb__span_at(p, open, open + 1), "open-bracket", "this `%c` is not closed",
+                               p->text[open]),
                   "close it with `%c`", round ? ')' : ']');
-    else anb__expected(p, round ? "`,` or `)`" : "`,` or `]`");
+    else
+        anb__expected(p, round ? "`,` or `)`" : "`,` or `]`");
 }

@@ -1,17 +1,21 @@
 #include "language/units.h"
 
-
 #include <stdio.h>
 #include <string.h>
 
 #include "base/names.h"
 
 /* Dimensions: ohm, second, metre, kelvin, volt, angle, scale. */
-#define OHM    {6, 0, 0, 0, 0, 0, ANB__SCALE_PLAIN}
-#define METRE  {0, 0, 6, 0, 0, 0, ANB__SCALE_PLAIN}
-#define ANGLE  {0, 0, 0, 0, 0, 6, ANB__SCALE_PLAIN}
-#define PLAIN  {0, 0, 0, 0, 0, 0, ANB__SCALE_PLAIN}
-#define LEVEL  {0, 0, 0, 0, 0, 0, ANB__SCALE_LEVEL}
+#define OHM                                                                                                  \
+    { 6, 0, 0, 0, 0, 0, ANB__SCALE_PLAIN }
+#define METRE                                                                                                \
+    { 0, 0, 6, 0, 0, 0, ANB__SCALE_PLAIN }
+#define ANGLE                                                                                                \
+    { 0, 0, 0, 0, 0, 6, ANB__SCALE_PLAIN }
+#define PLAIN                                                                                                \
+    { 0, 0, 0, 0, 0, 0, ANB__SCALE_PLAIN }
+#define LEVEL                                                                                                \
+    { 0, 0, 0, 0, 0, 0, ANB__SCALE_LEVEL }
 
 /* A unit is 10^decimal * factor / divisor base units. */
 static const struct {
@@ -53,8 +57,9 @@ enum { UNITS = sizeof units / sizeof *units };
 static const struct {
     const char *spelt, *written;
     int decimal;
-} prefixes[] = {{"", "", 0},       {"f", "f", -15}, {"p", "p", -12}, {"n", "n", -9}, {"u", "u", -6}, {"\u00b5", "u", -6},
-                {"\u03bc", "u", -6}, {"m", "m", -3},  {"k", "k", 3},   {"M", "M", 6},  {"G", "G", 9},  {"T", "T", 12}};
+} prefixes[] = {{"", "", 0},    {"f", "f", -15},     {"p", "p", -12},     {"n", "n", -9},
+                {"u", "u", -6}, {"\u00b5", "u", -6}, {"\u03bc", "u", -6}, {"m", "m", -3},
+                {"k", "k", 3},  {"M", "M", 6},       {"G", "G", 9},       {"T", "T", 12}};
 enum { PREFIXES = sizeof prefixes / sizeof *prefixes };
 
 /* One unit, prefix and all. */
@@ -63,9 +68,12 @@ static bool find_simple(const char *text, size_t length, anb__unit *out) {
         size_t name = strlen(units[u].name);
         if (length < name || memcmp(text + length - name, units[u].name, name)) continue;
         for (int p = 0; p < (units[u].prefixed ? PREFIXES : 1); p++) {
-            if (strlen(prefixes[p].spelt) != length - name || memcmp(text, prefixes[p].spelt, length - name)) continue;
-            *out = (anb__unit){.dimension = units[u].dimension, .decimal = units[u].decimal + prefixes[p].decimal,
-                               .factor = units[u].factor, .divisor = units[u].divisor};
+            if (strlen(prefixes[p].spelt) != length - name || memcmp(text, prefixes[p].spelt, length - name))
+                continue;
+            *out = (anb__unit){.dimension = units[u].dimension,
+                               .decimal = units[u].decimal + prefixes[p].decimal,
+                               .factor = units[u].factor,
+                               .divisor = units[u].divisor};
             snprintf(out->name, sizeof out->name, "%s%s", prefixes[p].written, units[u].written);
             return true;
         }
@@ -102,10 +110,11 @@ bool anb__unit_find(const char *text, size_t length, anb__unit *out) {
 }
 
 const char *anb__unit_nearest(const char *word) {
-    static const char *const usual[] = {"ohm", "kohm", "Mohm", "mohm", "S",  "mS",  "H",  "mH",   "uH",  "nH", "pH",   "F",   "uF",
-                                        "nF",  "pF",   "fF",   "Hz",   "kHz", "MHz", "GHz", "THz",  "s",   "ms", "us",   "ns",  "ps",
-                                        "m",   "mm",   "um",   "cm",   "V",   "mV",  "A",   "mA",   "W",   "mW", "deg",  "rad", "wave",
-                                        "dB",  "dBm",  "Np",   "%",    "ppm", "mil", "inch", "ft",  "dB/m"};
+    static const char *const usual[] = {
+        "ohm", "kohm", "Mohm", "mohm", "S",   "mS",  "H",   "mH",  "uH",  "nH",   "pH", "F",
+        "uF",  "nF",   "pF",   "fF",   "Hz",  "kHz", "MHz", "GHz", "THz", "s",    "ms", "us",
+        "ns",  "ps",   "m",    "mm",   "um",  "cm",  "V",   "mV",  "A",   "mA",   "W",  "mW",
+        "deg", "rad",  "wave", "dB",   "dBm", "Np",  "%",   "ppm", "mil", "inch", "ft", "dB/m"};
     if (!strcmp(word, "in")) return "inch";
     return anb__nearest(word, usual, sizeof usual / sizeof *usual);
 }
@@ -116,10 +125,14 @@ static void put_power(char *buffer, size_t size, const char *name, int sixths) {
     size_t length = strlen(buffer);
     const char *times = length ? "*" : "";
     if (!sixths) return;
-    if (sixths == 6) snprintf(buffer + length, size - length, "%s%s", times, name);
-    else if (sixths % 6 == 0) snprintf(buffer + length, size - length, "%s%s^%d", times, name, sixths / 6);
-    else if (sixths % 3 == 0) snprintf(buffer + length, size - length, "%s%s^(%d/2)", times, name, sixths / 3);
-    else snprintf(buffer + length, size - length, "%s%s^(%d/6)", times, name, sixths);
+    if (sixths == 6)
+        snprintf(buffer + length, size - length, "%s%s", times, name);
+    else if (sixths % 6 == 0)
+        snprintf(buffer + length, size - length, "%s%s^%d", times, name, sixths / 6);
+    else if (sixths % 3 == 0)
+        snprintf(buffer + length, size - length, "%s%s^(%d/2)", times, name, sixths / 3);
+    else
+        snprintf(buffer + length, size - length, "%s%s^(%d/6)", times, name, sixths);
 }
 
 const char *anb__dimension_name(anb__dimension d, char *buffer, size_t size) {

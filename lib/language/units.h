@@ -1,10 +1,9 @@
 /* Units and dimensions.
  *
- * A dimension is a product of powers of ohm, second, metre, kelvin, volt and angle, with the exponents in sixths (so
- * that square and cube roots exist), beside two scales that do not mix with any other: level (dB) and
- * absolute level (dBm).
- *   Hz = 1/s, S = 1/ohm, H = ohm s, F = s/ohm, A = V/ohm, W = V^2/ohm.
- * The base unit of angle is the turn, so that 90 deg is 0.25 and nothing else.
+ * A dimension is a product of powers of ohm, second, metre, kelvin, volt and angle, with the exponents in
+ * sixths (so that square and cube roots exist), beside two scales that do not mix with any other: level (dB)
+ * and absolute level (dBm). Hz = 1/s, S = 1/ohm, H = ohm s, F = s/ohm, A = V/ohm, W = V^2/ohm. The base unit
+ * of angle is the turn, so that 90 deg is 0.25 and nothing else.
  */
 #ifndef ANB_LANGUAGE_UNITS_H
 #define ANB_LANGUAGE_UNITS_H
@@ -21,7 +20,7 @@ typedef enum anb__scale {
 
 typedef struct anb__dimension {
     int8_t ohm, second, metre, kelvin, volt, angle; /* exponents times 6 */
-    uint8_t scale; /* anb__scale */
+    uint8_t scale;                                  /* anb__scale */
 } anb__dimension;
 
 static inline bool anb__same_dimension(anb__dimension a, anb__dimension b) {

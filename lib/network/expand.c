@@ -168,7 +168,8 @@ void anb__read_replacements(anb__report *report, anb__names *names, anb__arena *
         set[out->set_count++] = (anb__replacement){tree->name, tree->first, tree->name_span};
     }
     if (!overrides->sweep) return;
-    uint32_t source = anb__add_source(report, "--sweep", overrides->sweep, (uint32_t)strlen(overrides->sweep));
+    uint32_t source = anb__add_source(report, "--sweep", overrides->sweep,
+                                      (uint32_t)strlen(overrides->sweep));
     const anb__tree *tree = anb__parse_sweep_override(report, names, arena, source);
     if (tree->kind == ANB__TREE_SWEEP) out->sweep = tree;
 }

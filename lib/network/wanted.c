@@ -41,10 +41,21 @@ void anb__report_dimension(anb__expander *x, const anb__tree *tree, const anb__q
                       forms[0].at == ANB__AT_MUST ? " @ 1 GHz" : "");
 }
 
-static void refuse(anb__expander *x, const anb__tree *tree, const char *code, const char *what,
-                   const char *why) {
-    anb__error(x->report, tree->span, code, "`%s` %s, which %s may not", anb__quote(x, tree->span), why,
-               what);
+/* Why a value may not stand in a place: the first reason that the place names. */
+static const struct reason {
+    unsigned refused;
+    const char *code, *property, *rule;
+} reasons[] = {
+    {ANB__NO_FREQUENCY, "frequency-here", "depends on `frequency`", "may not"},
+    {ANB__NO_TOLERANCE, "tolerance-here", "has a tolerance", "may have none"},
+    {ANB__NO_TUNE, "tune-here", "depends on a `tune` name", "may not"},
+    {ANB__NO_COMPLEX, "complex-here", "is complex", "has to be real"},
+};
+
+static unsigned properties_of(const anb__quantity *q) {
+    return (q->term ? ANB__NO_FREQUENCY : 0u) | (q->marks & ANB__HAS_TOLERANCE ? ANB__NO_TOLERANCE : 0u) |
+           (q->marks & ANB__FROM_TUNE ? ANB__NO_TUNE : 0u) |
+           (!q->term && q->value.im != 0 ? ANB__NO_COMPLEX : 0u);
 }
 
 bool anb__check_wanted(anb__expander *x, const anb__tree *tree, const char *what, anb__dimension dimension,
@@ -56,16 +67,14 @@ bool anb__check_wanted(anb__expander *x, const anb__tree *tree, const char *what
         anb__report_dimension(x, tree, q, what, &form, 1);
         return false;
     }
-    if ((refused & ANB__NO_FREQUENCY) && q->term)
-        refuse(x, tree, "frequency-here", what, "depends on `frequency`");
-    else if ((refused & ANB__NO_TOLERANCE) && (q->marks & ANB__HAS_TOLERANCE))
-        refuse(x, tree, "tolerance-here", what, "has a tolerance");
-    else if ((refused & ANB__NO_TUNE) && (q->marks & ANB__FROM_TUNE))
-        refuse(x, tree, "tune-here", what, "depends on a `tune` name");
-    else if ((refused & ANB__NO_COMPLEX) && !q->term && q->value.im != 0)
-        refuse(x, tree, "complex-here", what, "is complex");
-    else return true;
-    return false;
+    unsigned found = refused & properties_of(q);
+    for (size_t i = 0; found && i < sizeof reasons / sizeof *reasons; i++) {
+        if (!(found & reasons[i].refused)) continue;
+        anb__error(x->report, tree->span, reasons[i].code, "`%s` %s: %s %s", anb__quote(x, tree->span),
+                   reasons[i].property, what, reasons[i].rule);
+        return false;
+    }
+    return true;
 }
 
 bool anb__wanted(anb__expander *x, const anb__tree *tree, const char *what, anb__dimension dimension,

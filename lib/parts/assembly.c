@@ -33,8 +33,10 @@ static uint32_t merge(anb__share *shares, uint32_t count) {
     uint32_t kept = 0;
     if (count > 1) qsort(shares, count, sizeof *shares, by_value);
     for (uint32_t i = 0; i < count; i++) {
-        if (kept && shares[kept - 1].value == shares[i].value) shares[kept - 1].factor += shares[i].factor;
-        else shares[kept++] = shares[i];
+        if (kept && shares[kept - 1].value == shares[i].value)
+            shares[kept - 1].factor += shares[i].factor;
+        else
+            shares[kept++] = shares[i];
     }
     return kept;
 }
@@ -82,8 +84,8 @@ static bool split_places(const anb__stamper *stamper, anb__assembly *out) {
     return true;
 }
 
-anb_status anb__assemble(const anb__network *network, const anb__numbering *numbering, const anb__shunt *shunts,
-                         uint32_t shunt_count, anb__assembly *out) {
+anb_status anb__assemble(const anb__network *network, const anb__numbering *numbering,
+                         const anb__shunt *shunts, uint32_t shunt_count, anb__assembly *out) {
     anb__stamper stamper = {.numbering = numbering, .unknown_count = numbering->unknown_count};
     *out = (anb__assembly){0};
     stamper.symmetric = is_reciprocal(network);
@@ -195,7 +197,8 @@ static const struct {
 
 static bool runs_here(const char *name) {
 #if defined(__x86_64__)
-    if (!strcmp(name, "avx512")) return __builtin_cpu_supports("avx512f") && __builtin_cpu_supports("avx512dq");
+    if (!strcmp(name, "avx512"))
+        return __builtin_cpu_supports("avx512f") && __builtin_cpu_supports("avx512dq");
     if (!strcmp(name, "avx2")) return __builtin_cpu_supports("avx2") && __builtin_cpu_supports("fma");
 #endif
     return !strcmp(name, "plain");

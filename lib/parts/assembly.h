@@ -23,7 +23,7 @@ typedef struct anb__numbering {
     const struct anb__node_term {
         uint32_t unknown;
         double sign;
-    } *terms;
+    } * terms;
 } anb__numbering;
 
 /* The part of an entry that is a + b s + c/s. */
@@ -66,9 +66,9 @@ typedef struct anb__assembly {
     bool symmetric;
     uint32_t unknown_count;
     uint32_t entry_count;
-    uint32_t *rows, *columns;   /* of the entries; symmetric: row >= column */
-    anb__base_terms *base;      /* of the entries */
-    uint32_t *first_share;      /* [entry_count + 1] */
+    uint32_t *rows, *columns; /* of the entries; symmetric: row >= column */
+    anb__base_terms *base;    /* of the entries */
+    uint32_t *first_share;    /* [entry_count + 1] */
     anb__share *shares;
     uint32_t value_count;
     anb__wave_values *waves;
@@ -88,8 +88,8 @@ typedef struct anb__shunt {
     anb__branch branch;
     anb__complex admittance;
 } anb__shunt;
-anb_status anb__assemble(const anb__network *network, const anb__numbering *numbering, const anb__shunt *shunts,
-                         uint32_t shunt_count, anb__assembly *out);
+anb_status anb__assemble(const anb__network *network, const anb__numbering *numbering,
+                         const anb__shunt *shunts, uint32_t shunt_count, anb__assembly *out);
 void anb__assembly_clear(anb__assembly *assembly);
 
 /* Doubles of scratch that filling `groups` groups needs. */
@@ -103,7 +103,8 @@ typedef void anb__assembly_fill(const anb__assembly *assembly, const uint32_t *s
 /* The filling of that kernel ("plain", "avx2", "avx512"); the best for NULL, NULL where there is none. */
 anb__assembly_fill *anb__assembly_kernel(const char *name);
 
-/* The admittances of a part at each lane of a group, row by row, from its equations; NaN where it has none. */
+/* The admittances of a part at each lane of a group, row by row, from its equations; NaN where it has none.
+ */
 void anb__evaluate_generic(const anb__placed *part, const double *hz, double *out, size_t stride);
 
 #endif

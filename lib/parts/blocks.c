@@ -82,8 +82,8 @@ const anb__family anb__family_coupled_inductors = {coils_equations, coils_stamps
 /* ---- blocks with a constant S-matrix: (v - z i) = S (v + z i) ----------------------------- */
 
 /* A = 1 - S, B = -z (1 + S). */
-static bool scattering_equations(const anb__placed *part, const anb__point *point, const anb__series *s, int size,
-                                 anb__equations *out) {
+static bool scattering_equations(const anb__placed *part, const anb__point *point, const anb__series *s,
+                                 int size, anb__equations *out) {
     anb__series z, unity = anb__series_constant(one);
     if (!anb__argument_series(part, ANB__ARG_Z, point, 50, &z)) return false;
     anb__series minus_z = anb__series_scale(&z, anb__cx(-1, 0));
@@ -101,7 +101,8 @@ static bool scattering_equations(const anb__placed *part, const anb__point *poin
  * has its admittance; at x = 0 and at half a turn it is a transformer instead. */
 static void stamp_matched(const anb__placed *part, anb__complex x, anb__stamper *stamper) {
     anb__complex up = anb__cexp(x), down = anb__cexp(anb__cneg(x));
-    anb__complex sinh_x = anb__cscale(anb__csub(up, down), 0.5), cosh_x = anb__cscale(anb__cadd(up, down), 0.5);
+    anb__complex sinh_x = anb__cscale(anb__csub(up, down), 0.5),
+                 cosh_x = anb__cscale(anb__cadd(up, down), 0.5);
     if (anb__cabs(sinh_x) < 1e-9 * anb__cabs(cosh_x)) {
         stamp_turns(stamper, cosh_x.re < 0 ? -1 : 1);
         return;
@@ -147,7 +148,8 @@ const anb__family anb__family_phase_shift = {phase_equations, phase_stamps, true
 /* Constant admittance of a block whose ports pass their waves on in a ring or one way only. */
 
 static bool isolator_equations(const anb__placed *part, const anb__point *point, anb__equations *out) {
-    anb__series s[4] = {anb__series_zero(), anb__series_zero(), anb__series_constant(one), anb__series_zero()};
+    anb__series s[4] = {anb__series_zero(), anb__series_zero(), anb__series_constant(one),
+                        anb__series_zero()};
     return scattering_equations(part, point, s, 2, out);
 }
 
@@ -204,7 +206,8 @@ const anb__family anb__family_gyrator = {gyrator_equations, gyrator_stamps, fals
 
 /* ---- transconductance: i1 = 0, i2 = gm v1 --------------------------------------------------- */
 
-static bool transconductance_equations(const anb__placed *part, const anb__point *point, anb__equations *out) {
+static bool transconductance_equations(const anb__placed *part, const anb__point *point,
+                                       anb__equations *out) {
     anb__series gm, unity = anb__series_constant(one);
     if (!anb__argument_series(part, ANB__ARG_GM, point, 0, &gm)) return false;
     anb__equations_clear(out, 2);

@@ -20,9 +20,9 @@ typedef struct frequencies {
 /* Sine and cosine of 2 pi (turns), turns within -1/2 .. 1/2. */
 static inline void sine_cosine(anb__vec turns, anb__vec *sine, anb__vec *cosine) {
     static const double s[] = {-1.0 / 1307674368000, 1.0 / 6227020800, -1.0 / 39916800, 1.0 / 362880,
-                               -1.0 / 5040, 1.0 / 120, -1.0 / 6};
+                               -1.0 / 5040,          1.0 / 120,        -1.0 / 6};
     static const double c[] = {1.0 / 20922789888000, -1.0 / 87178291200, 1.0 / 479001600, -1.0 / 3628800,
-                               1.0 / 40320, -1.0 / 720, 1.0 / 24};
+                               1.0 / 40320,          -1.0 / 720,         1.0 / 24};
     anb__vec quarters = turns * 4, whole = anb__vround(quarters);
     anb__vec x = (quarters - whole) * (TWO_PI / 4), z = x * x;
     anb__vec ps = anb__all(s[0]), pc = anb__all(c[0]);
@@ -46,9 +46,9 @@ static inline void sine_cosine(anb__vec turns, anb__vec *sine, anb__vec *cosine)
 
 /* e^y for y <= 0, and e^y - 1, which is exact near 0 as well. */
 static inline anb__vec exponential(anb__vec y, anb__vec *less_one_out) {
-    static const double p[] = {1.0 / 6227020800, 1.0 / 479001600, 1.0 / 39916800, 1.0 / 3628800, 1.0 / 362880,
-                               1.0 / 40320,      1.0 / 5040,      1.0 / 720,      1.0 / 120,     1.0 / 24,
-                               1.0 / 6,          0.5};
+    static const double p[] = {1.0 / 6227020800, 1.0 / 479001600, 1.0 / 39916800, 1.0 / 3628800,
+                               1.0 / 362880,     1.0 / 40320,     1.0 / 5040,     1.0 / 720,
+                               1.0 / 120,        1.0 / 24,        1.0 / 6,        0.5};
     const double ln2_hi = 6.93147180369123816490e-01, ln2_lo = 1.90821492927058770002e-10;
     y = anb__select(y < -700, anb__all(-700), y);
     anb__vec k = anb__vround(y * 1.44269504088896340736);
@@ -87,18 +87,22 @@ static inline anb__vec reduced_turns(const anb__wave *wave, anb__vec hz) {
 
 static inline void store_value(double *values, uint32_t groups, uint32_t value, size_t lane, anb__vec re,
                                anb__vec im) {
-    double *to = values + (size_t)value * groups * ANB__GROUP + lane / ANB__LANES * ANB__GROUP + lane % ANB__LANES;
+    double *to =
+        values + (size_t)value * groups * ANB__GROUP + lane / ANB__LANES * ANB__GROUP + lane % ANB__LANES;
     anb__store(to, re);
     anb__store(to + ANB__LANES, im);
 }
 
-static inline void store_imaginary(double *values, uint32_t groups, uint32_t value, size_t lane, anb__vec im) {
-    double *to = values + (size_t)value * groups * ANB__GROUP + lane / ANB__LANES * ANB__GROUP + lane % ANB__LANES;
+static inline void store_imaginary(double *values, uint32_t groups, uint32_t value, size_t lane,
+                                   anb__vec im) {
+    double *to =
+        values + (size_t)value * groups * ANB__GROUP + lane / ANB__LANES * ANB__GROUP + lane % ANB__LANES;
     anb__store(to + ANB__LANES, im);
 }
 
-/* Near a multiple of half a wave coth x and 1/sinh x are large and nearly opposite, and where both ends of a line meet they
- * cancel before any pivot could tell: such lanes are left to the pivoted way, by values that are no numbers. */
+/* Near a multiple of half a wave coth x and 1/sinh x are large and nearly opposite, and where both ends of a
+ * line meet they cancel before any pivot could tell: such lanes are left to the pivoted way, by values that
+ * are no numbers. */
 #define LEAST_SINH 1e-4
 
 static inline anb__vec unless_small(anb__vec value, anb__vec square) {
@@ -115,7 +119,8 @@ static void lossless_wave(const anb__wave_values *w, const frequencies *f, uint3
         anb__vec csch = -1 / unless_small(sine, sine * sine);
         if (w->value[ANB__COTH] != ANB__NO_VALUE)
             store_imaginary(values, groups, w->value[ANB__COTH], lane, cosine * csch);
-        if (w->value[ANB__CSCH] != ANB__NO_VALUE) store_imaginary(values, groups, w->value[ANB__CSCH], lane, csch);
+        if (w->value[ANB__CSCH] != ANB__NO_VALUE)
+            store_imaginary(values, groups, w->value[ANB__CSCH], lane, csch);
     }
 }
 
@@ -134,7 +139,8 @@ static inline hyperbolic hyperbolic_of(anb__vec loss, anb__vec turns) {
 }
 
 /* a/b */
-static inline void divide(anb__vec a_re, anb__vec a_im, anb__vec b_re, anb__vec b_im, anb__vec *re, anb__vec *im) {
+static inline void divide(anb__vec a_re, anb__vec a_im, anb__vec b_re, anb__vec b_im, anb__vec *re,
+                          anb__vec *im) {
     anb__vec inverse = 1 / anb__fma(b_re, b_re, b_im * b_im);
     *re = anb__fma(a_re, b_re, a_im * b_im) * inverse;
     *im = anb__fnma(a_re, b_im, a_im * b_re) * inverse;
@@ -166,12 +172,14 @@ static void lossy_wave(const anb__wave_values *w, const frequencies *f, uint32_t
 /* ---- lines of constants, branches ------------------------------------------------------- */
 
 /* x = sqrt(z y) with a real part that is not negative; Y0 = y/x. */
-static void constants_line(const anb__line_values *line, const frequencies *f, uint32_t groups, double *values) {
+static void constants_line(const anb__line_values *line, const frequencies *f, uint32_t groups,
+                           double *values) {
     const anb__line_model *m = &line->model;
     for (size_t lane = 0; lane < (size_t)groups * ANB__LANES; lane += ANB__WIDTH) {
         anb__vec omega = anb__load(f->omega + lane), re, im;
         anb__vec wl = omega * m->l, wc = omega * m->c;
-        anb__vec w_re = anb__fnma(wl, wc, anb__all(m->r * m->g)), w_im = anb__fma(wl, anb__all(m->g), wc * m->r);
+        anb__vec w_re = anb__fnma(wl, wc, anb__all(m->r * m->g)),
+                 w_im = anb__fma(wl, anb__all(m->g), wc * m->r);
         anb__vec size = anb__vsqrt(anb__fma(w_re, w_re, w_im * w_im));
         anb__vec large = anb__vsqrt((size + anb__vabs(w_re)) * 0.5), small = anb__vabs(w_im) * 0.5 / large;
         anb__vec x_re = anb__select(w_re < 0, small, large), x_im = anb__select(w_re < 0, large, small);
@@ -189,7 +197,8 @@ static void constants_line(const anb__line_values *line, const frequencies *f, u
     }
 }
 
-static void series_branch(const anb__branch_value *value, const frequencies *f, uint32_t groups, double *values) {
+static void series_branch(const anb__branch_value *value, const frequencies *f, uint32_t groups,
+                          double *values) {
     const anb__series_branch *b = &value->branch;
     for (size_t lane = 0; lane < (size_t)groups * ANB__LANES; lane += ANB__WIDTH) {
         anb__vec omega = anb__load(f->omega + lane), inverse = anb__load(f->inverse + lane), re, im;

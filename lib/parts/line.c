@@ -67,8 +67,12 @@ static bool open_equations(const anb__placed *part, const anb__point *point, anb
 static bool shorted_equations(const anb__placed *part, const anb__point *point, anb__equations *out) {
     return stub_equations(part, point, false, out);
 }
-static void open_stamps(const anb__placed *part, anb__stamper *stamper) { stub_stamps(part, ANB__TANH, stamper); }
-static void shorted_stamps(const anb__placed *part, anb__stamper *stamper) { stub_stamps(part, ANB__COTH, stamper); }
+static void open_stamps(const anb__placed *part, anb__stamper *stamper) {
+    stub_stamps(part, ANB__TANH, stamper);
+}
+static void shorted_stamps(const anb__placed *part, anb__stamper *stamper) {
+    stub_stamps(part, ANB__COTH, stamper);
+}
 
 const anb__family anb__family_open_stub = {open_equations, open_stamps, true};
 const anb__family anb__family_shorted_stub = {shorted_equations, shorted_stamps, true};
@@ -182,10 +186,11 @@ static bool constants_equations(const anb__placed *part, const anb__point *point
 
 static void constants_stamps(const anb__placed *part, anb__stamper *stamper) {
     double length = anb__constant(part, ANB__ARG_LENGTH, 0).re;
-    anb__stamp_line_constants(stamper, &(anb__line_model){.r = length * anb__constant(part, ANB__ARG_R, 0).re,
-                                                         .l = length * anb__constant(part, ANB__ARG_L, 0).re,
-                                                         .g = length * anb__constant(part, ANB__ARG_G, 0).re,
-                                                         .c = length * anb__constant(part, ANB__ARG_C, 0).re});
+    anb__stamp_line_constants(stamper,
+                              &(anb__line_model){.r = length * anb__constant(part, ANB__ARG_R, 0).re,
+                                                 .l = length * anb__constant(part, ANB__ARG_L, 0).re,
+                                                 .g = length * anb__constant(part, ANB__ARG_G, 0).re,
+                                                 .c = length * anb__constant(part, ANB__ARG_C, 0).re});
 }
 
 const anb__family anb__family_line_constants = {constants_equations, constants_stamps, true};

@@ -182,7 +182,8 @@ static bool capacitor_equations(const anb__placed *part, const anb__point *point
 
 static void capacitor_stamps(const anb__placed *part, anb__stamper *stamper) {
     const anb__argument *q = anb__argument_of(part, ANB__ARG_Q);
-    double c = anb__constant(part, ANB__ARG_C, 0).re, tangent = anb__constant(part, ANB__ARG_LOSS_TANGENT, 0).re;
+    double c = anb__constant(part, ANB__ARG_C, 0).re,
+           tangent = anb__constant(part, ANB__ARG_LOSS_TANGENT, 0).re;
     double r = anb__constant(part, ANB__ARG_ESR, 0).re, esl = anb__constant(part, ANB__ARG_ESL, 0).re;
     if (c == 0) return;
     if (q && q->has_at) r += 1 / (TWO_PI * q->at_hz * c * q->value.re);
@@ -194,7 +195,8 @@ static void capacitor_stamps(const anb__placed *part, anb__stamper *stamper) {
         anb__stamp_terms(stamper, 0, 0, zero, anb__cdiv(lossy, quality), zero);
         return;
     }
-    anb__stamp_branch(stamper, &(anb__series_branch){.resistance = r, .inductance = {esl, 0},
+    anb__stamp_branch(stamper, &(anb__series_branch){.resistance = r,
+                                                     .inductance = {esl, 0},
                                                      .elastance = anb__cdiv(quality, lossy)});
 }
 

@@ -42,7 +42,8 @@ const anb__family *anb__family_of(const anb__placed *part) { return families[par
 bool anb__part_equations(const anb__placed *part, const anb__point *point, anb__equations *out) {
     if (!anb__family_of(part)->equations(part, point, out)) return false;
     if (part->negated)
-        for (int k = 0; k < out->size * out->size; k++) out->b[k] = anb__series_scale(&out->b[k], anb__cx(-1, 0));
+        for (int k = 0; k < out->size * out->size; k++)
+            out->b[k] = anb__series_scale(&out->b[k], anb__cx(-1, 0));
     return true;
 }
 
@@ -89,7 +90,9 @@ anb__connection anb__connection_of(const anb__network *network, const anb__place
     return is_nothing(part) ? ANB__CONNECTS_NOTHING : ANB__CONNECTS_BY_EQUATIONS;
 }
 
-bool anb__has(const anb__placed *part, anb__argument_name name) { return anb__argument_of(part, name) != NULL; }
+bool anb__has(const anb__placed *part, anb__argument_name name) {
+    return anb__argument_of(part, name) != NULL;
+}
 
 anb__complex anb__constant(const anb__placed *part, anb__argument_name name, double fallback) {
     const anb__argument *argument = anb__argument_of(part, name);

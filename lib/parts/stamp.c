@@ -32,7 +32,8 @@ static uint64_t hash_of(const void *key, size_t size) {
     return hash;
 }
 
-static bool enlarge(anb__stamper *stamper, anb__index *index, const anb__list *list, size_t size, size_t key_size) {
+static bool enlarge(anb__stamper *stamper, anb__index *index, const anb__list *list, size_t size,
+                    size_t key_size) {
     uint32_t capacity = index->capacity ? 2 * index->capacity : 64;
     uint32_t *table = calloc(capacity, sizeof *table);
     if (!table) {
@@ -51,8 +52,8 @@ static bool enlarge(anb__stamper *stamper, anb__index *index, const anb__list *l
 }
 
 /* The item whose first `key_size` bytes (a multiple of 8) equal the key's, appended where there is none. */
-static void *find_or_append(anb__stamper *stamper, anb__list *list, anb__index *index, size_t size, const void *key,
-                            size_t key_size, bool *is_new) {
+static void *find_or_append(anb__stamper *stamper, anb__list *list, anb__index *index, size_t size,
+                            const void *key, size_t key_size, bool *is_new) {
     *is_new = false;
     if (2 * index->count >= index->capacity && !enlarge(stamper, index, list, size, key_size)) return NULL;
     uint32_t at = (uint32_t)hash_of(key, key_size) & (index->capacity - 1);
@@ -75,8 +76,8 @@ static void *find_or_append(anb__stamper *stamper, anb__list *list, anb__index *
 static uint32_t entry_at(anb__stamper *stamper, uint32_t row, uint32_t column) {
     anb__place_of_entry place = {row, column}, *found;
     bool is_new;
-    found = find_or_append(stamper, &stamper->places, &stamper->entry_index, sizeof place, &place, sizeof place,
-                           &is_new);
+    found = find_or_append(stamper, &stamper->places, &stamper->entry_index, sizeof place, &place,
+                           sizeof place, &is_new);
     if (!found) return UINT32_MAX;
     if (is_new && !append(stamper, &stamper->base, sizeof(anb__base_terms))) return UINT32_MAX;
     return (uint32_t)(found - (anb__place_of_entry *)stamper->places.items);
@@ -144,7 +145,8 @@ static void place_product(anb__stamper *stamper, const line_of_part *rows, const
         for (int c = 0; c < SIDES; c++)
             for (uint32_t i = 0; i < rows->counts[r]; i++)
                 for (uint32_t k = 0; k < columns->counts[c]; k++) {
-                    double sign = rows->signs[r] * columns->signs[c] * rows->terms[r][i].sign * columns->terms[c][k].sign;
+                    double sign = rows->signs[r] * columns->signs[c] * rows->terms[r][i].sign *
+                                  columns->terms[c][k].sign;
                     add_to(stamper, rows->terms[r][i].unknown, columns->terms[c][k].unknown, what, sign);
                 }
 }
@@ -164,7 +166,8 @@ static void place(anb__stamper *stamper, int row, int column, addition what) {
 
 /* ---- what the families call --------------------------------------------------------------- */
 
-void anb__stamp_terms(anb__stamper *stamper, int row, int column, anb__complex a, anb__complex b, anb__complex c) {
+void anb__stamp_terms(anb__stamper *stamper, int row, int column, anb__complex a, anb__complex b,
+                      anb__complex c) {
     place(stamper, row, column, (addition){.base = {a, b, c}, .value = ANB__NO_VALUE});
 }
 
@@ -174,11 +177,11 @@ int anb__stamp_unknown(anb__stamper *stamper) {
     return index;
 }
 
-void anb__stamp_wave(anb__stamper *stamper, int row, int column, const anb__wave *wave, anb__wave_function function,
-                     double factor) {
+void anb__stamp_wave(anb__stamper *stamper, int row, int column, const anb__wave *wave,
+                     anb__wave_function function, double factor) {
     bool is_new;
-    anb__wave_values *found = find_or_append(stamper, &stamper->waves, &stamper->wave_index, sizeof *found, wave,
-                                             sizeof *wave, &is_new);
+    anb__wave_values *found = find_or_append(stamper, &stamper->waves, &stamper->wave_index, sizeof *found,
+                                             wave, sizeof *wave, &is_new);
     if (!found) return;
     if (is_new) {
         found->lossless = wave->constant == 0 && wave->root == 0 && wave->linear == 0;
@@ -191,8 +194,8 @@ void anb__stamp_wave(anb__stamper *stamper, int row, int column, const anb__wave
 
 void anb__stamp_branch(anb__stamper *stamper, const anb__series_branch *branch) {
     bool is_new;
-    anb__branch_value *found = find_or_append(stamper, &stamper->series, &stamper->series_index, sizeof *found, branch,
-                                              sizeof *branch, &is_new);
+    anb__branch_value *found = find_or_append(stamper, &stamper->series, &stamper->series_index,
+                                              sizeof *found, branch, sizeof *branch, &is_new);
     if (!found) return;
     if (is_new) found->value = stamper->value_count++;
     place(stamper, 0, 0, (addition){.value = found->value, .factor = 1});
@@ -200,8 +203,8 @@ void anb__stamp_branch(anb__stamper *stamper, const anb__series_branch *branch) 
 
 void anb__stamp_line_constants(anb__stamper *stamper, const anb__line_model *model) {
     bool is_new;
-    anb__line_values *found = find_or_append(stamper, &stamper->lines, &stamper->line_index, sizeof *found, model,
-                                             sizeof *model, &is_new);
+    anb__line_values *found = find_or_append(stamper, &stamper->lines, &stamper->line_index, sizeof *found,
+                                             model, sizeof *model, &is_new);
     if (!found) return;
     if (is_new) {
         found->value = stamper->value_count;
@@ -232,8 +235,10 @@ void anb__stamp_part(anb__stamper *stamper, const anb__placed *part, const anb__
     stamper->branches = branches;
     stamper->mirrored = family->reciprocal;
     stamper->first_unknown = stamper->unknown_count;
-    if (anb__part_has_program(part)) stamp_generic(stamper, part);
-    else family->stamps(part, stamper);
+    if (anb__part_has_program(part))
+        stamp_generic(stamper, part);
+    else
+        family->stamps(part, stamper);
     stamper->part = NULL;
 }
 

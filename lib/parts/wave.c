@@ -3,11 +3,12 @@
 #define TWO_PI 6.283185307179586476925
 #define PI 3.141592653589793238463
 #define NEPER_PER_DB 0.1151292546497022842009 /* ln(10)/20 */
-#define SPEED_OF_LIGHT 299792458.0 /* m/s, exact: SI Brochure, 9th edition (2019) */
+#define SPEED_OF_LIGHT 299792458.0            /* m/s, exact: SI Brochure, 9th edition (2019) */
 
 /* sqrt(permittivity), or 1/velocity_factor: how much slower than light. */
 static long double slowness(const anb__placed *part) {
-    if (anb__has(part, ANB__ARG_VELOCITY_FACTOR)) return 1 / (long double)anb__constant(part, ANB__ARG_VELOCITY_FACTOR, 1).re;
+    if (anb__has(part, ANB__ARG_VELOCITY_FACTOR))
+        return 1 / (long double)anb__constant(part, ANB__ARG_VELOCITY_FACTOR, 1).re;
     return sqrtl((long double)anb__constant(part, ANB__ARG_PERMITTIVITY, 1).re);
 }
 
@@ -30,8 +31,10 @@ anb__wave anb__wave_of(const anb__placed *part, anb__argument_name name, double 
     anb__wave wave = {.turns_hi = (double)turns};
     wave.turns_lo = (double)(turns - wave.turns_hi);
     const anb__argument *loss = anb__argument_of(part, ANB__ARG_LOSS);
-    if (loss && loss->has_at) wave.root = scale * loss_nepers(part, name) / sqrt(loss->at_hz);
-    else if (loss) wave.constant = scale * loss_nepers(part, name);
+    if (loss && loss->has_at)
+        wave.root = scale * loss_nepers(part, name) / sqrt(loss->at_hz);
+    else if (loss)
+        wave.constant = scale * loss_nepers(part, name);
     wave.linear = PI * fabs(wave.turns_hi) * anb__constant(part, ANB__ARG_LOSS_TANGENT, 0).re;
     return wave;
 }
@@ -128,7 +131,8 @@ bool anb__half_wave(const anb__placed *part, anb__argument_name name, const anb_
     constant.arguments = values;
     for (int i = 0; i < part->argument_count; i++) {
         values[i] = part->arguments[i];
-        if (values[i].program && !anb__program_value(values[i].program, point->hz, &values[i].value)) return false;
+        if (values[i].program && !anb__program_value(values[i].program, point->hz, &values[i].value))
+            return false;
     }
     anb__wave half = anb__wave_of(&constant, name, 0.5);
     anb__complex s, c;

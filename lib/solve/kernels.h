@@ -9,10 +9,15 @@
  * each pivot
  *     growth^2 = (history of D + sum of |a|^2 over its column) / |D|^2,
  * and the lane's measure is the sum of growth^4 over all pivots: it is led by the largest, and it keeps
- * what is not a number, as a maximum would not.
+ * what is not a number, as a maximum would not. A pivot that only hands on its error, and has no part in the
+ * inverse that is wanted, counts a small share of it (INNER_SHARE): what its loss does to the result stands in the
+ * histories of its neighbours, and is little in a chain of resonators that a port damps further on. The share is there for
+ * losses so large that they are no longer handed on in proportion.
  */
 #include "base/lanes.h"
 #include "solve/plan_code.h"
+
+#define INNER_SHARE 1e-10 /* of growth^2 */
 
 #define ALWAYS_INLINE static inline __attribute__((always_inline))
 
@@ -142,7 +147,7 @@ ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, co
         squares += symmetric ? below[k] : below[k] + beside[k];
         factor[k] = times(column[k], pivot.of);
     }
-    add_growth(x, s, squares, pivot.square);
+    add_growth(x, s, keep ? squares : squares * INNER_SHARE, pivot.square);
     int n = 0;
     for (int i = 0; i < d; i++)
         for (int j = 0; j < (symmetric ? i + 1 : d); j++, n++) {

@@ -3,8 +3,8 @@
 #include <stdlib.h>
 #include <string.h>
 
-#define NOISE 1e-12     /* what a cancelled coefficient may be of its parts */
-#define THRESHOLD 0.1   /* a pivot is at least this share of its row's largest leading term */
+#define NOISE 1e-12      /* what a cancelled coefficient may be of its parts */
+#define THRESHOLD 0.1    /* a pivot is at least this share of its row's largest leading term */
 #define INDEPENDENT 1e-9 /* a wanted unknown may depend on a free one by this much, relatively */
 
 typedef struct cell {
@@ -15,7 +15,7 @@ typedef struct cell {
 typedef struct row {
     cell *cells; /* by column */
     uint32_t count, capacity;
-    uint32_t unknowns; /* cells whose column is an unknown; they come first */
+    uint32_t unknowns;       /* cells whose column is an unknown; they come first */
     uint32_t previous, next; /* in the list of rows with as many unknowns */
     bool done;
 } row;
@@ -30,7 +30,7 @@ typedef struct elimination {
     uint32_t size;
     row *rows;
     column *columns;
-    uint32_t *lists;     /* first row with k unknowns, k = 0 .. size; NONE */
+    uint32_t *lists;                    /* first row with k unknowns, k = 0 .. size; NONE */
     uint32_t *pivot_row, *pivot_column; /* in the order of elimination */
     uint32_t pivots;
     row spare;
@@ -42,8 +42,10 @@ enum { NONE = UINT32_MAX };
 
 static void unlink_row(elimination *e, uint32_t r) {
     row *here = &e->rows[r];
-    if (here->previous == NONE) e->lists[here->unknowns] = here->next;
-    else e->rows[here->previous].next = here->next;
+    if (here->previous == NONE)
+        e->lists[here->unknowns] = here->next;
+    else
+        e->rows[here->previous].next = here->next;
     if (here->next != NONE) e->rows[here->next].previous = here->previous;
 }
 
@@ -125,7 +127,8 @@ static void tidy(elimination *e, row *r) {
             order = here->value.order;
             largest = 0;
         }
-        if (here->value.order == order && leading_size(&here->value) > largest) largest = leading_size(&here->value);
+        if (here->value.order == order && leading_size(&here->value) > largest)
+            largest = leading_size(&here->value);
     }
     r->count = kept;
     if (!r->unknowns) return;
@@ -142,20 +145,24 @@ static const cell *find(const row *r, uint32_t c) {
     uint32_t low = 0, high = r->count;
     while (low < high) {
         uint32_t middle = (low + high) / 2;
-        if (r->cells[middle].column < c) low = middle + 1;
-        else high = middle;
+        if (r->cells[middle].column < c)
+            low = middle + 1;
+        else
+            high = middle;
     }
     return low < r->count && r->cells[low].column == c ? &r->cells[low] : NULL;
 }
 
 /* target -= factor * pivot, without the column that vanishes by it. */
-static bool subtract(elimination *e, uint32_t target, const row *pivot, const anb__series *factor, uint32_t gone) {
+static bool subtract(elimination *e, uint32_t target, const row *pivot, const anb__series *factor,
+                     uint32_t gone) {
     row *to = &e->rows[target], *out = &e->spare;
     static const anb__series nothing = {.zero = true, .terms = ANB__SERIES_TERMS};
     if (!reserve(out, to->count + pivot->count)) return false;
     out->count = 0;
     for (uint32_t i = 0, k = 0; i < to->count || k < pivot->count;) {
-        uint32_t a = i < to->count ? to->cells[i].column : NONE, b = k < pivot->count ? pivot->cells[k].column : NONE;
+        uint32_t a = i < to->count ? to->cells[i].column : NONE,
+                 b = k < pivot->count ? pivot->cells[k].column : NONE;
         uint32_t c = a < b ? a : b;
         const anb__series *old = a == c ? &to->cells[i++].value : &nothing;
         const anb__series *by = b == c ? &pivot->cells[k++].value : NULL;
@@ -241,8 +248,10 @@ static bool back_substitute(const elimination *e, uint32_t source, anb__series *
         const anb__series *pivot = NULL;
         for (uint32_t i = 0; i < r->count; i++) {
             const cell *here = &r->cells[i];
-            if (here->column == e->pivot_column[k]) pivot = &here->value;
-            else if (here->column == source && source >= e->size) sum = anb__series_add(&sum, &here->value);
+            if (here->column == e->pivot_column[k])
+                pivot = &here->value;
+            else if (here->column == source && source >= e->size)
+                sum = anb__series_add(&sum, &here->value);
             else if (here->column < e->size && !x[here->column].zero)
                 sum = anb__series_eliminate(&sum, &here->value, &x[here->column], NOISE);
         }
@@ -270,8 +279,8 @@ static double largest_of(const anb__series *x, uint32_t size) {
 }
 
 /* Whether a wanted unknown depends on one that nothing determines. */
-static bool depends_on_free(const elimination *e, const anb__probe *probes, uint32_t probe_count, anb__series *x,
-                            uint32_t *where) {
+static bool depends_on_free(const elimination *e, const anb__probe *probes, uint32_t probe_count,
+                            anb__series *x, uint32_t *where) {
     for (uint32_t c = 0; c < e->size; c++) {
         if (e->columns[c].done || !back_substitute(e, c, x)) continue;
         double largest = largest_of(x, e->size);
@@ -284,15 +293,17 @@ static bool depends_on_free(const elimination *e, const anb__probe *probes, uint
     return false;
 }
 
-static anb__solved solutions(const elimination *e, const anb__probe *probes, uint32_t probe_count, anb__series *x,
-                             anb__complex *out, uint32_t *where) {
-    if (contradiction(e, probes, where) || depends_on_free(e, probes, probe_count, x, where)) return ANB__UNDETERMINED;
+static anb__solved solutions(const elimination *e, const anb__probe *probes, uint32_t probe_count,
+                             anb__series *x, anb__complex *out, uint32_t *where) {
+    if (contradiction(e, probes, where) || depends_on_free(e, probes, probe_count, x, where))
+        return ANB__UNDETERMINED;
     for (uint32_t l = 0; l < probe_count; l++) {
         if (!back_substitute(e, e->size + l, x)) return ANB__UNDETERMINED;
         for (uint32_t k = 0; k < probe_count; k++) {
             *where = probes[k].unknown;
             anb__complex *to = &out[(size_t)k * probe_count + l];
-            if (!anb__series_limit(&x[probes[k].unknown], to) || !anb__cis_finite(*to)) return ANB__UNDETERMINED;
+            if (!anb__series_limit(&x[probes[k].unknown], to) || !anb__cis_finite(*to))
+                return ANB__UNDETERMINED;
         }
     }
     return ANB__SOLVED;
@@ -311,13 +322,14 @@ static void add_equal_places(row *r) {
     for (uint32_t i = 0; i < r->count; i++) {
         if (kept && r->cells[kept - 1].column == r->cells[i].column)
             r->cells[kept - 1].value = anb__series_add(&r->cells[kept - 1].value, &r->cells[i].value);
-        else r->cells[kept++] = r->cells[i];
+        else
+            r->cells[kept++] = r->cells[i];
     }
     r->count = kept;
 }
 
-static bool fill(elimination *e, const anb__series_entry *entries, uint32_t entry_count, const anb__probe *probes,
-                 uint32_t probe_count) {
+static bool fill(elimination *e, const anb__series_entry *entries, uint32_t entry_count,
+                 const anb__probe *probes, uint32_t probe_count) {
     for (uint32_t i = 0; i < entry_count + probe_count; i++) {
         bool is_entry = i < entry_count;
         row *r = &e->rows[is_entry ? entries[i].row : probes[i - entry_count].row];
@@ -338,7 +350,8 @@ static bool fill(elimination *e, const anb__series_entry *entries, uint32_t entr
 }
 
 anb__solved anb__solve_limit(uint32_t size, const anb__series_entry *entries, uint32_t entry_count,
-                             const anb__probe *probes, uint32_t probe_count, anb__complex *out, uint32_t *where) {
+                             const anb__probe *probes, uint32_t probe_count, anb__complex *out,
+                             uint32_t *where) {
     elimination e;
     anb__solved solved = ANB__NO_MEMORY;
     anb__series *x = NULL;

@@ -18,6 +18,7 @@ typedef struct anb__series_entry {
 
 /* Solves; out[k * probes + l] is the limit of the unknown of probe k for the source of probe l. */
 anb__solved anb__solve_limit(uint32_t size, const anb__series_entry *entries, uint32_t entry_count,
-                             const anb__probe *probes, uint32_t probe_count, anb__complex *out, uint32_t *where);
+                             const anb__probe *probes, uint32_t probe_count, anb__complex *out,
+                             uint32_t *where);
 
 #endif

@@ -57,8 +57,8 @@ static void note_magnitude(double *most, uint32_t i, anb__complex value) {
     if (size > most[i]) most[i] = size;
 }
 
-/* Unknowns whose diagonal elements vanish beside their neighbours', at the first sample. Elimination of a neighbour
- * makes them regular. */
+/* Unknowns whose diagonal elements vanish beside their neighbours', at the first sample. Elimination of a
+ * neighbour makes them regular. */
 static bool *find_weak(anb__arena *work, const anb__system *system) {
     uint32_t n = system->size;
     bool *weak = anb__arena_take(work, n + 1);
@@ -99,7 +99,8 @@ static void place(queue *q, uint32_t unknown) {
 }
 
 /* Puts weak unknowns behind the first of their neighbours; those without one keep their places at the end. */
-static void delay_weak(anb__arena *work, const anb__graph *graph, bool *weak, const uint32_t *wish, uint32_t *order) {
+static void delay_weak(anb__arena *work, const anb__graph *graph, bool *weak, const uint32_t *wish,
+                       uint32_t *order) {
     uint32_t n = graph->size;
     queue q = {.graph = graph, .weak = weak, .order = order};
     q.placed = anb__arena_take(work, n + 1);
@@ -108,8 +109,10 @@ static void delay_weak(anb__arena *work, const anb__graph *graph, bool *weak, co
     for (uint32_t k = 0; k < n; k++) {
         uint32_t u = wish[k];
         if (q.placed[u]) continue;
-        if (weak[u] && !q.ready[u]) q.passed[u] = true;
-        else place(&q, u);
+        if (weak[u] && !q.ready[u])
+            q.passed[u] = true;
+        else
+            place(&q, u);
     }
     for (uint32_t k = 0; k < n; k++)
         if (!q.placed[wish[k]]) order[q.count++] = wish[k];
@@ -118,23 +121,25 @@ static void delay_weak(anb__arena *work, const anb__graph *graph, bool *weak, co
 static void move_ports_last(anb__arena *work, const bool *is_port, uint32_t n, uint32_t *order) {
     uint32_t *ports = anb__arena_take(work, ((size_t)n + 1) * sizeof *ports), inner = 0, count = 0;
     for (uint32_t k = 0; k < n; k++) {
-        if (is_port[order[k]]) ports[count++] = order[k];
-        else order[inner++] = order[k];
+        if (is_port[order[k]])
+            ports[count++] = order[k];
+        else
+            order[inner++] = order[k];
     }
     memcpy(order + inner, ports, count * sizeof *ports);
 }
 
 /* Approximate minimum degree (P. Amestoy, T. A. Davis and I. S. Duff 2004). */
-void anb__order_large(anb__arena *work, const anb__system *system, const anb__graph *graph, const bool *is_port,
-                      anb__order_rule rule, uint32_t *order) {
+void anb__order_large(anb__arena *work, const anb__system *system, const anb__graph *graph,
+                      const bool *is_port, anb__order_rule rule, uint32_t *order) {
     uint32_t n = graph->size;
     int32_t *wish = anb__arena_take(work, ((size_t)n + 1) * sizeof *wish);
     double control[AMD_CONTROL];
     amd_defaults(control);
     int status = n > INT32_MAX || graph->start[n] > INT32_MAX
                      ? AMD_OUT_OF_MEMORY
-                     : amd_order((int32_t)n, (const int32_t *)graph->start, (const int32_t *)graph->neighbour, wish,
-                                 control, NULL);
+                     : amd_order((int32_t)n, (const int32_t *)graph->start, (const int32_t *)graph->neighbour,
+                                 wish, control, NULL);
     if (status != AMD_OK && status != AMD_OK_BUT_JUMBLED) longjmp(*work->escape, 1);
     if (rule == ANB__PORTS_LAST) move_ports_last(work, is_port, n, (uint32_t *)wish);
     delay_weak(work, graph, find_weak(work, system), (const uint32_t *)wish, order);
@@ -142,6 +147,8 @@ void anb__order_large(anb__arena *work, const anb__system *system, const anb__gr
 
 void anb__order_of(anb__arena *work, const anb__system *system, const anb__graph *graph, const bool *is_port,
                    anb__order_rule rule, uint32_t *order) {
-    if (graph->size <= ANB__ORDER_SMALL) anb__order_small(work, system, graph, is_port, rule, order);
-    else anb__order_large(work, system, graph, is_port, rule, order);
+    if (graph->size <= ANB__ORDER_SMALL)
+        anb__order_small(work, system, graph, is_port, rule, order);
+    else
+        anb__order_large(work, system, graph, is_port, rule, order);
 }

@@ -25,9 +25,9 @@ void anb__order_of(anb__arena *work, const anb__system *system, const anb__graph
 
 /* The two ways that anb__order_of chooses from. */
 enum { ANB__ORDER_SMALL = 512 }; /* unknowns that are ordered by their values too */
-void anb__order_small(anb__arena *work, const anb__system *system, const anb__graph *graph, const bool *is_port,
-                      anb__order_rule rule, uint32_t *order);
-void anb__order_large(anb__arena *work, const anb__system *system, const anb__graph *graph, const bool *is_port,
-                      anb__order_rule rule, uint32_t *order);
+void anb__order_small(anb__arena *work, const anb__system *system, const anb__graph *graph,
+                      const bool *is_port, anb__order_rule rule, uint32_t *order);
+void anb__order_large(anb__arena *work, const anb__system *system, const anb__graph *graph,
+                      const bool *is_port, anb__order_rule rule, uint32_t *order);
 
 #endif

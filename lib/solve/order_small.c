@@ -1,9 +1,9 @@
 /* Minimum degree that looks at the values (H. M. Markowitz 1957, with pivots on the diagonal only).
  *
- * The matrix is eliminated at a few typical points while the order is being found, eight of them side by side.
- * An unknown may go when its pivot is safe at all of them: not small beside its column and not
- * the rest of a cancellation. A zero on the diagonal (a branch current, an ideal transformer) thus waits
- * until fill has made it regular.
+ * The matrix is eliminated at a few typical points while the order is being found, eight of them side by
+ * side. An unknown may go when its pivot is safe at all of them: not small beside its column and not the rest
+ * of a cancellation. A zero on the diagonal (a branch current, an ideal transformer) thus waits until fill
+ * has made it regular.
  */
 #include <math.h>
 #include <string.h>
@@ -11,9 +11,9 @@
 #include "solve/order.h"
 
 enum {
-    SAFE = 50,           /* a safe pivot may be this much smaller than its column or its former self */
-    CLIQUE = 32,         /* from this size on, an order within a full block is not worth the search */
-    BUDGET = 100000      /* updates of values; beyond it, the pattern alone decides */
+    SAFE = 50,      /* a safe pivot may be this much smaller than its column or its former self */
+    CLIQUE = 32,    /* from this size on, an order within a full block is not worth the search */
+    BUDGET = 100000 /* updates of values; beyond it, the pattern alone decides */
 };
 
 typedef double value[ANB__GROUP]; /* re[8], im[8]: one lane for each sample */
@@ -23,14 +23,14 @@ typedef enum fitness { UNKNOWN, SAFE_PIVOT, UNSAFE_PIVOT } fitness;
 typedef struct ordering {
     anb__arena *work;
     uint32_t size, left;
-    uint32_t words;        /* of a set of unknowns */
+    uint32_t words; /* of a set of unknowns */
     bool symmetric;
-    uint64_t *neighbours;  /* [size][words]: sets, of those that are left */
+    uint64_t *neighbours; /* [size][words]: sets, of those that are left */
     uint32_t *degree;
     bool *done;
     /* values; not kept once the budget is spent */
     bool has_values;
-    uint32_t *place;       /* [row * size + column]: index of a value, plus 1 */
+    uint32_t *place; /* [row * size + column]: index of a value, plus 1 */
     value *values;
     size_t count, capacity;
     uint32_t budget;
@@ -49,7 +49,8 @@ static double *value_at(ordering *o, uint32_t row, uint32_t column) {
     uint32_t *place = &o->place[(size_t)row * o->size + column];
     if (!*place) {
         if (o->count == o->capacity) {
-            o->values = anb__arena_grow(o->work, o->values, o->count * sizeof(value), 2 * o->count * sizeof(value));
+            o->values =
+                anb__arena_grow(o->work, o->values, o->count * sizeof(value), 2 * o->count * sizeof(value));
             o->capacity *= 2;
         }
         memset(o->values[o->count], 0, sizeof(value));
@@ -232,8 +233,8 @@ static void take_rest(ordering *o, uint32_t *order, uint32_t count) {
         }
 }
 
-void anb__order_small(anb__arena *work, const anb__system *system, const anb__graph *graph, const bool *is_port,
-                      anb__order_rule rule, uint32_t *order) {
+void anb__order_small(anb__arena *work, const anb__system *system, const anb__graph *graph,
+                      const bool *is_port, anb__order_rule rule, uint32_t *order) {
     ordering o = {.work = work, .size = graph->size, .symmetric = system->symmetric, .budget = BUDGET};
     o.has_values = system->sample_count > 0;
     load_pattern(&o, graph);

@@ -4,20 +4,21 @@
 #include <stdlib.h>
 #include <string.h>
 
-enum { DENSE_UP_TO = 24 };    /* unknowns; beyond it KLU is faster */
-#define SINGULAR 1e-13        /* smallest over largest pivot of rows that are scaled to 1 */
-#define KLU_PIVOT_TOLERANCE 0.1 /* a diagonal pivot is kept from this share of its column's largest entry on */
+enum { DENSE_UP_TO = 24 }; /* unknowns; beyond it KLU is faster */
+#define SINGULAR 1e-13     /* smallest over largest pivot of rows that are scaled to 1 */
+#define KLU_PIVOT_TOLERANCE                                                                                  \
+    0.1 /* a diagonal pivot is kept from this share of its column's largest entry on */
 
 struct anb__pivoted {
     uint32_t size, entry_count, probe_count;
     const anb__probe *probes;
-    uint32_t *place_of;   /* entry -> index into `matrix` */
+    uint32_t *place_of;         /* entry -> index into `matrix` */
     int *column_start, *row_of; /* compressed columns: [size + 1], [places] */
-    double *matrix;       /* complex, [places], rows scaled */
-    double *row_scale;    /* [size] */
-    double *x, *rest;     /* complex, [probes][size] */
-    double *dense;        /* complex, [size][size] by columns; small systems only */
-    uint32_t *pivots;     /* small systems only */
+    double *matrix;             /* complex, [places], rows scaled */
+    double *row_scale;          /* [size] */
+    double *x, *rest;           /* complex, [probes][size] */
+    double *dense;              /* complex, [size][size] by columns; small systems only */
+    uint32_t *pivots;           /* small systems only */
     klu_symbolic *symbolic;
     klu_common common;
 };
@@ -82,8 +83,9 @@ static anb_status analyse(anb__pivoted *p) {
     return p->symbolic || p->common.status == KLU_SINGULAR ? ANB_OK : ANB_MEMORY;
 }
 
-anb_status anb__pivoted_new(uint32_t size, const uint32_t *rows, const uint32_t *columns, uint32_t entry_count,
-                            const anb__probe *probes, uint32_t probe_count, anb__pivoted **out) {
+anb_status anb__pivoted_new(uint32_t size, const uint32_t *rows, const uint32_t *columns,
+                            uint32_t entry_count, const anb__probe *probes, uint32_t probe_count,
+                            anb__pivoted **out) {
     anb__pivoted *p = calloc(1, sizeof *p);
     anb_status status = ANB_MEMORY;
     *out = NULL;
@@ -93,8 +95,10 @@ anb_status anb__pivoted_new(uint32_t size, const uint32_t *rows, const uint32_t 
     p->probe_count = probe_count;
     p->probes = probes;
     if (allocate(p) && compress(p, rows, columns)) status = analyse(p);
-    if (status == ANB_OK) *out = p;
-    else anb__pivoted_free(p);
+    if (status == ANB_OK)
+        *out = p;
+    else
+        anb__pivoted_free(p);
     return status;
 }
 
@@ -193,7 +197,8 @@ static bool dense_factor(anb__pivoted *p) {
             put(p->dense, c * n + best, swap);
         }
         anb__complex inverse = anb__cdiv(anb__cx(1, 0), at(p->dense, k * n + k));
-        for (size_t i = k + 1; i < n; i++) put(p->dense, k * n + i, anb__cmul(at(p->dense, k * n + i), inverse));
+        for (size_t i = k + 1; i < n; i++)
+            put(p->dense, k * n + i, anb__cmul(at(p->dense, k * n + i), inverse));
         for (size_t c = k + 1; c < n; c++) {
             anb__complex factor = at(p->dense, c * n + k);
             if (anb__cis_zero(factor)) continue;
@@ -214,10 +219,12 @@ static void dense_solve(const anb__pivoted *p, double *b) {
             put(b, p->pivots[k], swap);
         }
         for (size_t k = 0; k < n; k++)
-            for (size_t i = k + 1; i < n; i++) put(b, i, anb__csub(at(b, i), anb__cmul(at(p->dense, k * n + i), at(b, k))));
+            for (size_t i = k + 1; i < n; i++)
+                put(b, i, anb__csub(at(b, i), anb__cmul(at(p->dense, k * n + i), at(b, k))));
         for (size_t k = n; k-- > 0;) {
             put(b, k, anb__cdiv(at(b, k), at(p->dense, k * n + k)));
-            for (size_t i = 0; i < k; i++) put(b, i, anb__csub(at(b, i), anb__cmul(at(p->dense, k * n + i), at(b, k))));
+            for (size_t i = 0; i < k; i++)
+                put(b, i, anb__csub(at(b, i), anb__cmul(at(p->dense, k * n + i), at(b, k))));
         }
     }
 }

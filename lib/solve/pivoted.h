@@ -10,12 +10,13 @@
 typedef struct anb__pivoted anb__pivoted;
 
 /* For a pattern of `entry_count` places, equal ones added. One object serves one thread. */
-anb_status anb__pivoted_new(uint32_t size, const uint32_t *rows, const uint32_t *columns, uint32_t entry_count,
-                            const anb__probe *probes, uint32_t probe_count, anb__pivoted **out);
+anb_status anb__pivoted_new(uint32_t size, const uint32_t *rows, const uint32_t *columns,
+                            uint32_t entry_count, const anb__probe *probes, uint32_t probe_count,
+                            anb__pivoted **out);
 void anb__pivoted_free(anb__pivoted *pivoted);
 
-/* Solves for the values of one point. out[k * probes + l] is the unknown of probe k for the source of probe l.
- * ANB__UNDETERMINED says that the matrix is singular, or so nearly that rounding decides: then
+/* Solves for the values of one point. out[k * probes + l] is the unknown of probe k for the source of probe
+ * l. ANB__UNDETERMINED says that the matrix is singular, or so nearly that rounding decides: then
  * anb__solve_limit is to be asked. */
 anb__solved anb__pivoted_solve(anb__pivoted *pivoted, const anb__complex *values, anb__complex *out);
 

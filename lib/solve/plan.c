@@ -8,14 +8,16 @@
 #include "solve/plan_emit.h"
 
 enum {
-    FEW_PORTS = 3,            /* for so many, ports come last without a look at the other way */
-    FIRST_LEVEL = 32 << 10,   /* bytes of the caches that a block of slots should fit into */
+    FEW_PORTS = 3,          /* for so many, one candidate is enough in a system of moderate size */
+    FEW_UNKNOWNS = 12,      /* up to so many, ports come last; beyond, they are ordered with the others */
+    MODERATE = 200,
+    FIRST_LEVEL = 32 << 10, /* bytes of the caches that a block of slots should fit into */
     SECOND_LEVEL = 384 << 10,
     MOST_GROUPS = 16
 };
-#define GROWTH_LIMIT 3e3         /* growth that still leaves about 1e-12, see solve/kernels.h */
-#define MANY_PIVOTS 64.0         /* so many, each at the limit, count for one: errors add up like random ones */
-#define LEAST_PATIENCE 1e5       /* steps spent on the second candidate however cheap the first one is */
+#define GROWTH_LIMIT 3e3 /* growth that still leaves about 1e-12, see solve/kernels.h */
+#define MANY_PIVOTS 64.0   /* so many, each at the limit, count for one: errors add up like random ones */
+#define LEAST_PATIENCE 1e5 /* steps spent on the second candidate however cheap the first one is */
 
 /* ---- costs ------------------------------------------------------------------------------------- */
 
@@ -90,12 +92,20 @@ static double try_order(compiler *c, anb__order_rule rule, double patience, anb_
     return place_block(c->system, out);
 }
 
+/* Ports that go last leave the rest to be eliminated without the terminations that damp it: long chains then lose
+ * digits at their own resonances. So a small gain is not worth having them last. */
+#define WORTH_HAVING 1.2
+
 static void choose_layout(compiler *c, anb__layout *out) {
+    if (c->system->port_count <= FEW_PORTS && c->system->size > FEW_UNKNOWNS && c->system->size <= MODERATE) {
+        try_order(c, ANB__ALL_ALIKE, INFINITY, out);
+        return;
+    }
     double cost = try_order(c, ANB__PORTS_LAST, INFINITY, out);
-    if (c->system->port_count <= FEW_PORTS) return;
+    if (c->system->size <= FEW_UNKNOWNS && c->system->port_count <= FEW_PORTS) return;
     anb__layout other = {0};
     double patience = 2 * cost > LEAST_PATIENCE ? 2 * cost : LEAST_PATIENCE;
-    if (try_order(c, ANB__ALL_ALIKE, patience, &other) < cost) *out = other;
+    if (try_order(c, ANB__ALL_ALIKE, patience, &other) < WORTH_HAVING * cost) *out = other;
 }
 
 /* ---- blocks of points ---------------------------------------------------------------------------------- */
@@ -108,7 +118,8 @@ static uint32_t suitable_groups(const anb__plan *plan) {
     return groups ? (uint32_t)groups : 1;
 }
 
-/* ---- compiling --------------------------------------------------------------------------------------------- */
+/* ---- compiling
+ * --------------------------------------------------------------------------------------------- */
 
 static void compile(compiler *c) {
     const anb__system *system = c->system;
@@ -144,8 +155,10 @@ anb_status anb__plan_compile(const anb__system *system, anb__plan **out) {
     bool done = compile_or_escape(&c);
     anb__arena_free(&c.work);
     c.plan->arena.escape = NULL;
-    if (done) *out = c.plan;
-    else anb__plan_free(c.plan);
+    if (done)
+        *out = c.plan;
+    else
+        anb__plan_free(c.plan);
     return done ? ANB_OK : ANB_MEMORY;
 }
 
@@ -155,7 +168,8 @@ void anb__plan_free(anb__plan *plan) {
     free(plan);
 }
 
-/* ---- about a plan --------------------------------------------------------------------------------------------- */
+/* ---- about a plan
+ * --------------------------------------------------------------------------------------------- */
 
 uint32_t anb__plan_slot_of(const anb__plan *plan, uint32_t entry) { return plan->slot_of[entry]; }
 uint32_t anb__plan_slot_count(const anb__plan *plan) { return plan->slot_count; }
@@ -163,7 +177,8 @@ uint32_t anb__plan_block_groups(const anb__plan *plan) { return plan->block_grou
 uint64_t anb__plan_operations(const anb__plan *plan) { return plan->operations; }
 bool anb__plan_is_symmetric(const anb__plan *plan) { return plan->symmetric; }
 
-/* ---- kernels ------------------------------------------------------------------------------------------------------ */
+/* ---- kernels
+ * ------------------------------------------------------------------------------------------------------ */
 
 static const anb__plan_kernel kernels[] = {
 #if defined(__x86_64__)

@@ -1,9 +1,10 @@
 /* A plan's inside: what the compiler writes and the kernels run.
  *
  * The code is a list of words. Each operation begins with its kind; the words that follow are
- * described with the function in solve/kernels.h that runs it. Numbers of slots stand for [groups][ANB__GROUP]
- * doubles each. A *history* is half a slot, [groups][ANB__LANES] doubles: for each lane the sum of the
- * squared magnitudes that a diagonal element had before each of its updates (see solve/kernels.h).
+ * described with the function in solve/kernels.h that runs it. Numbers of slots stand for
+ * [groups][ANB__GROUP] doubles each. A *history* is half a slot, [groups][ANB__LANES] doubles: for each lane
+ * the sum of the squared magnitudes that a diagonal element had before each of its updates (see
+ * solve/kernels.h).
  */
 #ifndef ANB_SOLVE_PLAN_CODE_H
 #define ANB_SOLVE_PLAN_CODE_H
@@ -31,9 +32,9 @@ enum {
     ANB__ZERO_HISTORY = 0,     /* always zero */
     ANB__GROWTH_HISTORY = 1,   /* not a history: the lane's measure of growth */
     ANB__FIRST_HISTORY = 2,
-    ANB__PANEL_DEPTH = 32,     /* columns that a panel packs at a time */
-    ANB__SWEEP_DEPTH = 8,      /* columns that are swept at a time, in a small block ... */
-    ANB__SWEEP_DEEP = 32,      /* ... and in one of ANB__SWEEP_LARGE unknowns or more */
+    ANB__PANEL_DEPTH = 32, /* columns that a panel packs at a time */
+    ANB__SWEEP_DEPTH = 8,  /* columns that are swept at a time, in a small block ... */
+    ANB__SWEEP_DEEP = 32,  /* ... and in one of ANB__SWEEP_LARGE unknowns or more */
     ANB__SWEEP_LARGE = 320
 };
 
@@ -44,10 +45,10 @@ struct anb__plan {
     uint32_t entry_count;
     const uint32_t *slot_of; /* [entry_count] */
     uint32_t slot_count, block_groups;
-    uint32_t zero_slot;     /* zero at all times */
-    uint32_t history_slot;  /* where the histories begin; just behind zero_slot */
+    uint32_t zero_slot;    /* zero at all times */
+    uint32_t history_slot; /* where the histories begin; just behind zero_slot */
     uint32_t history_count;
-    uint32_t scratch_slot;  /* what panels and sweeps work in */
+    uint32_t scratch_slot; /* what panels and sweeps work in */
     const uint32_t *code;
     const anb__complex *constants;
     double growth_limit; /* for the lane's measure of growth, see solve/kernels.h */

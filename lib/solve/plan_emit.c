@@ -12,11 +12,11 @@ typedef struct emitter {
     anb__words code;
     anb__plan *plan;
     bool as_sums;
-    uint32_t *port_at;      /* [size]: the port of a position, or ANB__NOWHERE; not for sums */
-    anb__complex *scale;    /* [size]: S = scale_i scale_j Z_ij - d */
+    uint32_t *port_at;   /* [size]: the port of a position, or ANB__NOWHERE; not for sums */
+    anb__complex *scale; /* [size]: S = scale_i scale_j Z_ij - d */
     anb__complex *constants;
     size_t constant_count, constant_capacity;
-    size_t scratch_cells;   /* of ANB__GROUP doubles */
+    size_t scratch_cells; /* of ANB__GROUP doubles */
 } emitter;
 
 static void put(emitter *e, uint32_t word) { anb__words_add(e->work, &e->code, word); }
@@ -24,8 +24,8 @@ static void put(emitter *e, uint32_t word) { anb__words_add(e->work, &e->code, w
 static uint32_t constant(emitter *e, anb__complex value) {
     if (e->constant_count == e->constant_capacity) {
         size_t capacity = e->constant_capacity ? 2 * e->constant_capacity : 16;
-        e->constants = anb__arena_grow(e->work, e->constants, e->constant_count * sizeof value,
-                                       capacity * sizeof value);
+        e->constants =
+            anb__arena_grow(e->work, e->constants, e->constant_count * sizeof value, capacity * sizeof value);
         e->constant_capacity = capacity;
     }
     e->constants[e->constant_count] = value;
@@ -92,7 +92,8 @@ static void emit_eliminate(emitter *e, uint32_t i) {
 
 /* The slot of an element that a panel updates. Fill is cleared when the plan starts. */
 static uint32_t panel_target(emitter *e, uint32_t row, uint32_t column) {
-    if (row >= e->layout->block && column >= e->layout->block) return anb__store_block(&e->store, row, column);
+    if (row >= e->layout->block && column >= e->layout->block)
+        return anb__store_block(&e->store, row, column);
     uint32_t *place = anb__store_place(&e->store, row, column);
     if (*place == ANB__NOWHERE) *place = anb__store_new_cleared(&e->store);
     return *place;
@@ -123,15 +124,17 @@ static void emit_panel(emitter *e, uint32_t first, uint32_t width) {
 static void emit_elimination(emitter *e) {
     for (uint32_t i = 0, width; i < e->layout->block; i += width ? width : 1) {
         width = anb__panel_width(e->layout, i);
-        if (width) emit_panel(e, i, width);
-        else emit_eliminate(e, i);
+        if (width)
+            emit_panel(e, i, width);
+        else
+            emit_eliminate(e, i);
     }
 }
 
 /* ---- scales ------------------------------------------------------------------------------------------- */
 
-/* With Z'_ij = s_i s_j Z_ij the recurrence stays what it is, if L_ki is multiplied by s_i/s_k and 1/D_i by s_i^2.
- * Where all s are equal only the latter is left. */
+/* With Z'_ij = s_i s_j Z_ij the recurrence stays what it is, if L_ki is multiplied by s_i/s_k and 1/D_i by
+ * s_i^2. Where all s are equal only the latter is left. */
 static void emit_scale_of_row(emitter *e, uint32_t i, anb__words *list) {
     const anb__pattern *pattern = &e->layout->pattern;
     for (size_t k = pattern->start[i]; k < pattern->start[i + 1]; k++) {
@@ -178,7 +181,8 @@ static void emit_scales(emitter *e) {
     for (size_t k = 0; k < list.count; k++) put(e, list.word[k]);
 }
 
-/* ---- the block ------------------------------------------------------------------------------------------ */
+/* ---- the block ------------------------------------------------------------------------------------------
+ */
 
 /* The element of the result at a pair of positions, or nowhere. */
 static uint32_t element_at(const emitter *e, uint32_t row, uint32_t column) {
@@ -229,7 +233,8 @@ static void emit_block(emitter *e) {
     if (size > ANB__FIXED) need_scratch(e, (size_t)4 * size * depth + 3 * (size_t)depth * depth);
 }
 
-/* ---- rows of the inverse --------------------------------------------------------------------------------- */
+/* ---- rows of the inverse ---------------------------------------------------------------------------------
+ */
 
 /* The elements (i, j) of row i that are only results, or that are kept in slots. */
 static bool is_target(const emitter *e, uint32_t i, uint32_t j, bool in_slot) {
@@ -285,8 +290,10 @@ static void emit_inverse(emitter *e, uint32_t i, bool across, bool with_diagonal
     for (size_t k = pattern->start[at]; k < pattern->start[at + 1]; k++) put(e, factors[k]);
     put_targets(e, i, across, true);
     put_targets(e, i, across, false);
-    if (with_diagonal) put_diagonal(e, i);
-    else put(e, ANB__NOWHERE);
+    if (with_diagonal)
+        put_diagonal(e, i);
+    else
+        put(e, ANB__NOWHERE);
 }
 
 /* The lower half of an unsymmetric inverse comes first, since the diagonal follows from it. */
@@ -299,7 +306,8 @@ static void emit_rows(emitter *e) {
     }
 }
 
-/* ---- results that stand in slots --------------------------------------------------------------------------- */
+/* ---- results that stand in slots
+ * --------------------------------------------------------------------------- */
 
 static void put_copy(emitter *e, uint32_t row, uint32_t column, uint32_t *count) {
     put(e, element_at(e, row, column));
@@ -361,7 +369,8 @@ static void emit_sums(emitter *e) {
             put_sum(e, to, from);
 }
 
-/* ---- all of it ------------------------------------------------------------------------------------------------ */
+/* ---- all of it
+ * ------------------------------------------------------------------------------------------------ */
 
 static void find_ports(emitter *e) {
     uint32_t n = e->layout->pattern.size;
@@ -393,7 +402,8 @@ static void finish(emitter *e) {
     if (e->store.cleared.count) {
         anb__words_add(e->work, &head, ANB__OP_CLEAR);
         anb__words_add(e->work, &head, (uint32_t)(e->store.cleared.count / 2));
-        for (size_t k = 0; k < e->store.cleared.count; k++) anb__words_add(e->work, &head, e->store.cleared.word[k]);
+        for (size_t k = 0; k < e->store.cleared.count; k++)
+            anb__words_add(e->work, &head, e->store.cleared.word[k]);
     }
     put(e, ANB__OP_END);
     plan->code = copy_words(&plan->arena, &head, &e->code);
@@ -407,7 +417,8 @@ static void finish(emitter *e) {
     plan->slot_count = plan->scratch_slot + (uint32_t)e->scratch_cells;
 }
 
-void anb__emit(anb__arena *work, const anb__system *system, const anb__layout *layout, bool as_sums, anb__plan *plan) {
+void anb__emit(anb__arena *work, const anb__system *system, const anb__layout *layout, bool as_sums,
+               anb__plan *plan) {
     emitter e = {.work = work, .system = system, .layout = layout, .plan = plan, .as_sums = as_sums};
     uint32_t *slot_of = anb__arena_take(&plan->arena, ((size_t)system->entry_count + 1) * sizeof *slot_of);
     plan->slot_of = slot_of;

@@ -2,8 +2,8 @@
  *
  * With M = L D U, the elements Z_ij of the inverse above the diagonal of row i follow from those of
  * later rows, Z_ij = - sum U_ik Z_kj over the elements k of row i of U (and so below it, with L), and
- * Z_ii = 1/D_i - sum U_ik Z_ki (K. Takahashi, J. Fagan and M. Chin 1973; A. M. Erisman and W. F. Tinney 1975).
- * So what the rows need is found by going through them in ascending order.
+ * Z_ii = 1/D_i - sum U_ik Z_ki (K. Takahashi, J. Fagan and M. Chin 1973; A. M. Erisman and W. F. Tinney
+ * 1975). So what the rows need is found by going through them in ascending order.
  */
 #include <string.h>
 
@@ -27,7 +27,8 @@ static void mark_ancestors(const anb__pattern *pattern, uint32_t i, uint32_t *ma
     }
 }
 
-static void find_active(anb__arena *work, const anb__system *system, const anb__pattern *pattern, anb__need *out) {
+static void find_active(anb__arena *work, const anb__system *system, const anb__pattern *pattern,
+                        anb__need *out) {
     uint32_t n = pattern->size, terms = system->port_count ? system->first_term[system->port_count] : 0;
     out->index = anb__arena_take(work, ((size_t)n + 1) * sizeof *out->index);
     memset(out->index, 0xff, ((size_t)n + 1) * sizeof *out->index);
@@ -76,8 +77,8 @@ static void add_from(uint64_t *set, const uint64_t *more, uint32_t from, uint32_
 }
 
 /* All pairs of the two sets become needed: whole words at a time where the sets are dense. */
-static void need_pairs(const anb__need *need, uint32_t *rows, uint32_t height, const uint32_t *list, uint32_t count,
-                       uint64_t *sets) {
+static void need_pairs(const anb__need *need, uint32_t *rows, uint32_t height, const uint32_t *list,
+                       uint32_t count, uint64_t *sets) {
     uint32_t words = need->words;
     if ((double)height * count < (double)words * (height + count)) {
         for (uint32_t k = 0; k < height; k++)

@@ -99,7 +99,8 @@ static void make_column(columns *c, uint32_t i) {
 
 /* ---- postorder ---------------------------------------------------------------------------------- */
 
-/* Moves the child with the longest column to the end of each list, so that it comes just before its parent. */
+/* Moves the child with the longest column to the end of each list, so that it comes just before its parent.
+ */
 static void put_longest_first(columns *c, uint32_t i) {
     uint32_t longest = longest_child(c, i), before = ANB__NOWHERE;
     if (longest == ANB__NOWHERE || c->child[i] == longest) return;

@@ -1,5 +1,5 @@
-/* The pattern of the factors, and which elements of the inverse are needed. Everything is in terms of positions
- * in the order of elimination. */
+/* The pattern of the factors, and which elements of the inverse are needed. Everything is in terms of
+ * positions in the order of elimination. */
 #ifndef ANB_SOLVE_PLAN_PATTERN_H
 #define ANB_SOLVE_PLAN_PATTERN_H
 
@@ -16,13 +16,13 @@ typedef struct anb__pattern {
  * tree leads ... down to a port, that is the ports' and their ancestors'. */
 typedef struct anb__need {
     uint32_t count;
-    uint32_t *active;   /* [count] positions, ascending */
-    uint32_t *index;    /* [size]: of a position among them, or ANB__NOWHERE */
+    uint32_t *active; /* [count] positions, ascending */
+    uint32_t *index;  /* [size]: of a position among them, or ANB__NOWHERE */
     uint32_t words;
-    uint64_t *wanted;   /* [count][words]: (i, j), j >= i, that are elements of the result */
-    uint64_t *needed;   /* the same for those that other elements are computed from */
-    uint32_t *targets;  /* [count]: how many j > i are wanted or needed */
-    double work;        /* complex multiply-adds of Takahashi's recurrence for all rows */
+    uint64_t *wanted;  /* [count][words]: (i, j), j >= i, that are elements of the result */
+    uint64_t *needed;  /* the same for those that other elements are computed from */
+    uint32_t *targets; /* [count]: how many j > i are wanted or needed */
+    double work;       /* complex multiply-adds of Takahashi's recurrence for all rows */
 } anb__need;
 
 static inline uint32_t anb__height(const anb__pattern *p, uint32_t i) {

@@ -55,8 +55,10 @@ static size_t find_row(const anb__pattern *pattern, uint32_t row, uint32_t colum
     size_t low = pattern->start[column], high = pattern->start[column + 1];
     while (high - low > 1) {
         size_t middle = low + (high - low) / 2;
-        if (pattern->row[middle] <= row) low = middle;
-        else high = middle;
+        if (pattern->row[middle] <= row)
+            low = middle;
+        else
+            high = middle;
     }
     return low;
 }
@@ -85,8 +87,8 @@ uint32_t anb__panel_width(const anb__layout *layout, uint32_t i) {
     return width;
 }
 
-/* A panel's columns are packed, one behind the other. The rows of U beside it likewise, with unused places for the
- * diagonal. */
+/* A panel's columns are packed, one behind the other. The rows of U beside it likewise, with unused places
+ * for the diagonal. */
 static void place_panel(anb__store *store, uint32_t first, uint32_t width) {
     const anb__pattern *pattern = &store->layout->pattern;
     for (int half = 0; half < (store->symmetric ? 1 : 2); half++)
@@ -148,7 +150,8 @@ static void take_lists(anb__store *store) {
 /* The numbers of the slots of the inverse; the slots are taken when they are first asked for. */
 static void take_inverse(anb__store *store) {
     const anb__need *need = &store->layout->need;
-    store->first_inverse = anb__arena_take(store->work, ((size_t)need->count + 1) * sizeof *store->first_inverse);
+    store->first_inverse =
+        anb__arena_take(store->work, ((size_t)need->count + 1) * sizeof *store->first_inverse);
     size_t total = 0;
     for (uint32_t i = 0; i < need->count; i++) {
         store->first_inverse[i] = total;
@@ -164,18 +167,21 @@ static void take_inverse(anb__store *store) {
     memset(store->inverse_lower, 0xff, total * sizeof *store->inverse_lower);
 }
 
-void anb__store_start(anb__store *store, anb__arena *work, const anb__system *system, const anb__layout *layout,
-                      uint32_t *slot_of) {
-    *store = (anb__store){.work = work, .layout = layout, .symmetric = system->symmetric,
-                          .next = ANB__ZERO_SLOT + 1, .history_count = ANB__FIRST_HISTORY};
+void anb__store_start(anb__store *store, anb__arena *work, const anb__system *system,
+                      const anb__layout *layout, uint32_t *slot_of) {
+    *store = (anb__store){.work = work,
+                          .layout = layout,
+                          .symmetric = system->symmetric,
+                          .next = ANB__ZERO_SLOT + 1,
+                          .history_count = ANB__FIRST_HISTORY};
     take_lists(store);
     place_panels(store);
     uint32_t fixed = store->next;
     store->written = anb__arena_take(work, (size_t)fixed + 1);
     for (uint32_t e = 0; e < system->entry_count; e++) {
         const anb__entry *entry = &system->entries[e];
-        slot_of[e] = place_entry(store, layout->pattern.position[entry->row],
-                                 layout->pattern.position[entry->column]);
+        slot_of[e] =
+            place_entry(store, layout->pattern.position[entry->row], layout->pattern.position[entry->column]);
         if (slot_of[e] < fixed) store->written[slot_of[e]] = true;
     }
     for (uint32_t slot = ANB__ZERO_SLOT + 1; slot < fixed; slot++)

@@ -32,7 +32,8 @@ static anb_status sample_frequencies(const anb__grid *grid, double *hz) {
 static anb_status sample(const anb__engine *e, const anb__grid *grid, anb__complex *samples) {
     uint32_t count = e->assembly.entry_count;
     double hz[ANB__LANES];
-    double *scratch = aligned(anb__assembly_scratch(&e->assembly, 1)), *slots = aligned((size_t)count * ANB__GROUP);
+    double *scratch = aligned(anb__assembly_scratch(&e->assembly, 1)),
+           *slots = aligned((size_t)count * ANB__GROUP);
     uint32_t *identity = malloc(((size_t)count + 1) * sizeof *identity);
     anb_status status = scratch && slots && identity ? sample_frequencies(grid, hz) : ANB_MEMORY;
     if (status == ANB_OK) {
@@ -64,16 +65,26 @@ static anb_status compile_plan(anb__engine *e, const anb__grid *grid) {
     uint32_t count = e->assembly.entry_count, ports = network->port_count;
     anb__complex *samples = malloc(((size_t)count * ANB__LANES + 1) * sizeof *samples);
     anb__entry *entries = malloc(((size_t)count + 1) * sizeof *entries);
-    anb__complex *scale = malloc(((size_t)ports + 1) * sizeof *scale), *offset = malloc(((size_t)ports + 1) * sizeof *offset);
+    anb__complex *scale = malloc(((size_t)ports + 1) * sizeof *scale),
+                 *offset = malloc(((size_t)ports + 1) * sizeof *offset);
     e->slot_of = malloc(((size_t)count + 1) * sizeof *e->slot_of);
-    anb_status status = samples && entries && scale && offset && e->slot_of ? sample(e, grid, samples) : ANB_MEMORY;
+    anb_status status =
+        samples && entries && scale && offset && e->slot_of ? sample(e, grid, samples) : ANB_MEMORY;
     if (status == ANB_OK) {
-        for (uint32_t i = 0; i < count; i++) entries[i] = (anb__entry){e->assembly.rows[i], e->assembly.columns[i]};
+        for (uint32_t i = 0; i < count; i++)
+            entries[i] = (anb__entry){e->assembly.rows[i], e->assembly.columns[i]};
         port_constants(network, scale, offset);
-        anb__system system = {.size = e->assembly.unknown_count, .symmetric = e->assembly.symmetric,
-                              .entry_count = count, .entries = entries, .sample_count = ANB__LANES,
-                              .samples = samples, .port_count = ports, .first_term = e->nodes.first_port_term,
-                              .terms = e->nodes.port_terms, .scale = scale, .offset = offset};
+        anb__system system = {.size = e->assembly.unknown_count,
+                              .symmetric = e->assembly.symmetric,
+                              .entry_count = count,
+                              .entries = entries,
+                              .sample_count = ANB__LANES,
+                              .samples = samples,
+                              .port_count = ports,
+                              .first_term = e->nodes.first_port_term,
+                              .terms = e->nodes.port_terms,
+                              .scale = scale,
+                              .offset = offset};
         status = anb__plan_compile(&system, &e->plan);
     }
     for (uint32_t i = 0; status == ANB_OK && i < count; i++) e->slot_of[i] = anb__plan_slot_of(e->plan, i);
@@ -93,12 +104,14 @@ static anb_status assemble(anb__engine *e) {
         const anb__port *port = &network->ports[k];
         shunts[k] = (anb__shunt){{port->plus, port->minus}, anb__cdiv(anb__cx(1, 0), port->z)};
     }
-    anb_status status = anb__assemble(network, &e->nodes.numbering, shunts, network->port_count, &e->assembly);
+    anb_status status =
+        anb__assemble(network, &e->nodes.numbering, shunts, network->port_count, &e->assembly);
     free(shunts);
     return status;
 }
 
-anb_status anb__engine_new(const anb__network *network, const anb__grid *grid, const char *kernel, anb__engine *out) {
+anb_status anb__engine_new(const anb__network *network, const anb__grid *grid, const char *kernel,
+                           anb__engine *out) {
     double start = seconds();
     *out = (anb__engine){.network = network};
     out->kernel = anb__plan_kernel_find(kernel);
@@ -186,8 +199,8 @@ static anb_status make_pivoted(anb__bench *bench) {
                             &bench->pivoted);
 }
 
-/* S of one point from all the equations. Where their matrix is singular, as it may well be at 0 Hz, the series
- * decide. */
+/* S of one point from all the equations. Where their matrix is singular, as it may well be at 0 Hz, the
+ * series decide. */
 static anb_status solve_point(anb__bench *bench, double hz) {
     uint32_t where = UINT32_MAX;
     bench->pivoted_points++;
@@ -224,8 +237,8 @@ static void load_frequencies(anb__bench *bench, const double *hz, uint64_t count
     }
 }
 
-static anb_status compute_block(anb__bench *bench, const double *hz, uint64_t count, uint32_t groups, double *out,
-                                size_t group_size) {
+static anb_status compute_block(anb__bench *bench, const double *hz, uint64_t count, uint32_t groups,
+                                double *out, size_t group_size) {
     const anb__engine *e = bench->engine;
     load_frequencies(bench, hz, count, groups);
     e->fill(&e->assembly, e->slot_of, bench->hz, groups, bench->scratch, bench->slots);

@@ -26,8 +26,10 @@ static uint32_t find(uint32_t *set, uint32_t node) {
 static void unite(uint32_t *set, uint32_t a, uint32_t b) {
     a = find(set, a);
     b = find(set, b);
-    if (a < b) set[b] = a;
-    else set[a] = b;
+    if (a < b)
+        set[b] = a;
+    else
+        set[a] = b;
 }
 
 static void join_wires(const anb__network *network, uint32_t *set) {
@@ -50,7 +52,8 @@ static void join_islands(const anb__network *network, uint32_t *set) {
             unite(set, branch->plus, branch->minus);
         }
     }
-    for (uint32_t k = 0; k < network->port_count; k++) unite(set, network->ports[k].plus, network->ports[k].minus);
+    for (uint32_t k = 0; k < network->port_count; k++)
+        unite(set, network->ports[k].plus, network->ports[k].minus);
 }
 
 /* The node of each island that is set to zero: a port's minus node where there is one, else the lowest. */
@@ -101,11 +104,12 @@ static uint32_t root_of(const link *links, uint32_t node) {
     return node;
 }
 
-/* Makes the difference of a port's two nodes an unknown, where neither is at zero already. Only a node from which
- * nothing is counted yet may move, or depths would grow behind our back. */
+/* Makes the difference of a port's two nodes an unknown, where neither is at zero already. Only a node from
+ * which nothing is counted yet may move, or depths would grow behind our back. */
 static void link_port(const anb__nodes *nodes, const anb__port *port, link *links, bool *counted_from) {
     uint32_t plus = nodes->same_as[port->plus], minus = nodes->same_as[port->minus];
-    if (nodes->grounded[plus] || nodes->grounded[minus] || root_of(links, plus) == root_of(links, minus)) return;
+    if (nodes->grounded[plus] || nodes->grounded[minus] || root_of(links, plus) == root_of(links, minus))
+        return;
     bool move_plus = links[plus].from == NONE && !counted_from[plus] && depth_of(links, minus) < DEEPEST;
     bool move_minus = links[minus].from == NONE && !counted_from[minus] && depth_of(links, plus) < DEEPEST;
     if (move_plus) {
@@ -161,7 +165,8 @@ static bool number_unknowns(const anb__network *network, anb__nodes *out) {
 /* ---- ports -------------------------------------------------------------------------------------- */
 
 /* Adds the terms of a node, `sign` times, to those of a port; opposite ones cancel. */
-static uint32_t add_terms(const anb__nodes *nodes, uint32_t node, double sign, anb__term *terms, uint32_t count) {
+static uint32_t add_terms(const anb__nodes *nodes, uint32_t node, double sign, anb__term *terms,
+                          uint32_t count) {
     for (uint32_t i = nodes->first[node]; i < nodes->first[node + 1]; i++) {
         uint32_t k = 0;
         while (k < count && terms[k].unknown != nodes->terms[i].unknown) k++;
@@ -198,7 +203,8 @@ anb_status anb__number_nodes(const anb__network *network, anb__nodes *out) {
     if (!out->same_as || !out->grounded) return ANB_MEMORY;
     for (uint32_t n = 0; n < count; n++) out->same_as[n] = n;
     join_wires(network, out->same_as);
-    bool done = ground_islands(network, out) && number_unknowns(network, out) && list_port_terms(network, out);
+    bool done =
+        ground_islands(network, out) && number_unknowns(network, out) && list_port_terms(network, out);
     return done ? ANB_OK : ANB_MEMORY;
 }
 

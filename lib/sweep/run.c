@@ -183,7 +183,8 @@ anb_status anb__run(const anb__engine *engine, const anb__grid *grid, unsigned t
     anb_status status = workers ? fill_ring(&p) : ANB_MEMORY;
     if (status == ANB_OK) status = make_benches(engine, workers, threads, &p);
     if (status == ANB_OK)
-        status = threads == 1 ? run_alone(&p, &workers[0].bench, outcome) : run_threads(&p, workers, threads, outcome);
+        status = threads == 1 ? run_alone(&p, &workers[0].bench, outcome)
+                              : run_threads(&p, workers, threads, outcome);
     outcome->pivoted_points = p.pivoted_points;
     for (unsigned i = 0; workers && i < threads; i++)
         if (workers[i].has_bench) anb__bench_clear(&workers[i].bench);

@@ -13,8 +13,8 @@
 /* One block of points. */
 typedef struct anb__block {
     uint64_t first, count;
-    double *hz;      /* [count] */
-    void *payload;   /* the job's own, made once for each place in the ring */
+    double *hz;    /* [count] */
+    void *payload; /* the job's own, made once for each place in the ring */
     anb_status status;
     double failed_hz; /* as in anb__bench, after ANB_INVALID */
     uint32_t failed_unknown, failed_part;
@@ -22,11 +22,11 @@ typedef struct anb__block {
 
 typedef struct anb__job {
     void *user;
-    uint64_t block_points; /* a multiple of ANB__LANES */
-    void *(*make_payload)(void *user);      /* NULL when memory is gone */
+    uint64_t block_points;             /* a multiple of ANB__LANES */
+    void *(*make_payload)(void *user); /* NULL when memory is gone */
     void (*free_payload)(void *user, void *payload);
     anb_status (*process)(void *user, anb__bench *bench, anb__block *block); /* on any thread */
-    anb_status (*deliver)(void *user, anb__block *block);                    /* on the calling thread, in order */
+    anb_status (*deliver)(void *user, anb__block *block); /* on the calling thread, in order */
 } anb__job;
 
 typedef struct anb__outcome {

@@ -26,20 +26,24 @@ static void put(writer *w, uint32_t row, uint32_t column, const anb__series *val
         w->columns[k] = column;
     }
     if (w->values) w->values[k] = anb__cscale(limit_of(value), sign);
-    if (w->entries) w->entries[k] = (anb__series_entry){row, column, anb__series_scale(value, anb__cx(sign, 0))};
+    if (w->entries)
+        w->entries[k] = (anb__series_entry){row, column, anb__series_scale(value, anb__cx(sign, 0))};
 }
 
-static uint32_t unknown_of(const anb__tableau *t, uint32_t node) { return t->node_unknown[t->nodes->same_as[node]]; }
+static uint32_t unknown_of(const anb__tableau *t, uint32_t node) {
+    return t->node_unknown[t->nodes->same_as[node]];
+}
 
 /* The current's law: `current` leaves at plus and enters at minus. */
-static void put_current(const anb__tableau *t, const anb__branch *branch, uint32_t current, double sign, writer *w) {
+static void put_current(const anb__tableau *t, const anb__branch *branch, uint32_t current, double sign,
+                        writer *w) {
     anb__series unity = anb__series_real(1);
     put(w, unknown_of(t, branch->plus), current, &unity, sign);
     put(w, unknown_of(t, branch->minus), current, &unity, -sign);
 }
 
-static void put_voltage(const anb__tableau *t, uint32_t row, const anb__branch *branch, const anb__series *factor,
-                        writer *w) {
+static void put_voltage(const anb__tableau *t, uint32_t row, const anb__branch *branch,
+                        const anb__series *factor, writer *w) {
     put(w, row, unknown_of(t, branch->plus), factor, 1);
     put(w, row, unknown_of(t, branch->minus), factor, -1);
 }
@@ -85,7 +89,8 @@ static bool write_all(const anb__tableau *t, const anb__point *point, writer *w,
             put_idle(t, part, w);
             continue;
         }
-        if (!point) anb__equations_clear(&e, part->branch_count);
+        if (!point)
+            anb__equations_clear(&e, part->branch_count);
         else if (!anb__part_equations(part, point, &e)) {
             *where = i;
             return false;

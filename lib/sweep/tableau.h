@@ -12,21 +12,21 @@
 typedef struct anb__tableau {
     const anb__network *network;
     const anb__nodes *nodes;
-    double unit_ohm;       /* currents are counted in volts per this */
-    uint32_t size;         /* unknowns: node voltages, branch currents, port currents */
+    double unit_ohm; /* currents are counted in volts per this */
+    uint32_t size;   /* unknowns: node voltages, branch currents, port currents */
     uint32_t entry_count;
-    uint32_t *rows, *columns; /* of the entries */
-    uint32_t *node_unknown;   /* [node_count]; UINT32_MAX for nodes at zero volts */
+    uint32_t *rows, *columns;          /* of the entries */
+    uint32_t *node_unknown;            /* [node_count]; UINT32_MAX for nodes at zero volts */
     uint32_t first_branch, first_port; /* unknowns */
-    anb__probe *probes;       /* [port_count] */
+    anb__probe *probes;                /* [port_count] */
 } anb__tableau;
 
 /* ANB_OK or ANB_MEMORY; to be cleared in any case. */
 anb_status anb__tableau_new(const anb__network *network, const anb__nodes *nodes, anb__tableau *out);
 void anb__tableau_clear(anb__tableau *tableau);
 
-/* The entries' values at a frequency, at 0 Hz their limits; false where a part's value is not defined there: *part
- * names it. */
+/* The entries' values at a frequency, at 0 Hz their limits; false where a part's value is not defined there:
+ * *part names it. */
 bool anb__tableau_values(const anb__tableau *tableau, double hz, anb__complex *values, uint32_t *part);
 /* The entries as series around 0 Hz, or as single values elsewhere. */
 bool anb__tableau_series(const anb__tableau *tableau, double hz, anb__series_entry *entries, uint32_t *part);

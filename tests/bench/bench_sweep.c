@@ -8,7 +8,6 @@
  * zgesv of LAPACK. All answers are compared; beyond 1e-9 the bench fails. Times are medians of the rounds.
  */
 #include <klu.h>
-#include <lapacke.h>
 #include <stdio.h>
 #include <stdlib.h>
 #include <string.h>
@@ -17,6 +16,9 @@
 #include "context.h"
 #include "data/data.h"
 #include "sweep/engine.h"
+
+/* after our own: it brings <complex.h>, whose macros take common words */
+#include <lapacke.h>
 
 enum { MOST_ROUNDS = 101, LAPACK_POINTS = 101, CHUNK = 4096 };
 #define AGREEMENT 1e-9

@@ -24,7 +24,7 @@ import tool
 
 TOLERANCE = 1e-10               # of S where nothing else is said; prose rounds, and says so by `digits`
 FEW = 5                         # points of each sweep that are held against the reference
-BEYOND_THE_READER = {"match_pi", "gauge_station", "gauge_station, 12 m"}  # they use `assume`, `include`, `cases`
+BEYOND_THE_READER = {"match_pi", "gauge_station", "gauge_station, 12 m"}  # `assume`, `include`, `cases`
 UNITS = {"Hz": 1.0, "kHz": 1e3, "MHz": 1e6, "GHz": 1e9}
 R2 = math.sqrt(0.5)
 Z0 = 50.0
@@ -90,12 +90,14 @@ def gauge(hz, metres):
     """Both antennas are in step, so that the splitter's two arms are one of half the impedance."""
     w, edge, arm = 2 * math.pi * hz, 2 * math.pi * 700e6, 2 * math.pi * 433.92e6
     a, z = 10 ** (3 / 20), math.sqrt(2) * 50
-    pad = product(shunt((a - 1) / (a + 1) / 50), series(50 * (a * a - 1) / (2 * a)), shunt((a - 1) / (a + 1) / 50))
+    across = shunt((a - 1) / (a + 1) / 50)
+    pad = product(across, series(50 * (a * a - 1) / (2 * a)), across)
     ladder = [series(coil(50 / edge, hz, 40, 900e6)), shunt(chip(2 / (edge * 50), hz, 250, 900e6))]
     loss = 0.15 * metres * math.sqrt(hz / 433.92e6) * math.log(10) / 20
     cable = travel(50, loss + 1j * w * metres / (0.83 * 299792458))
     head = shunt(chip(2 / (arm * z), hz, 300, 900e6, 0.4e-9))
-    halves = [series(coil(z / arm, hz, 45, 900e6, 3e9) / 2), shunt(2 * chip(1 / (arm * z), hz, 300, 900e6, 0.4e-9))]
+    halves = [series(coil(z / arm, hz, 45, 900e6, 3e9) / 2),
+              shunt(2 * chip(1 / (arm * z), hz, 300, 900e6, 0.4e-9))]
     s11, s21 = scattering(product(pad, *ladder, ladder[0], cable, head, *halves), 50.0, 25.0)
     return s11, s21 * R2
 
@@ -152,14 +154,18 @@ EXAMPLES = {
         ("S(common, common)", 1000, NOTHING), ("S(left, left)", 1000, NOTHING),
         ("S(right, left)", 1000, NOTHING),
         # closed roots: the sections' even and odd halves
-        ("isolation(left, right)", 819.4328801979911, 20.0), ("isolation(left, right)", 1180.567119802009, 20.0),
+        ("isolation(left, right)", 819.4328801979911, 20.0),
+        ("isolation(left, right)", 1180.567119802009, 20.0),
         ("return_loss(common)", 816.4991577520184, 20.0), ("return_loss(common)", 1183.5008422479816, 20.0),
-        ("S(common, common)", 2000, -1 / 3), ("S(left, common)", 2000, -2 / 3), ("S(right, left)", 2000, 2 / 3),
+        ("S(common, common)", 2000, -1 / 3), ("S(left, common)", 2000, -2 / 3),
+        ("S(right, left)", 2000, 2 / 3),
     ]),
     "splitter_lumped": ("common left right", [
         ("S(left, common)", M434, -1j * R2), ("S(right, common)", M434, -1j * R2),
-        ("S(common, common)", M434, NOTHING), ("S(left, left)", M434, NOTHING), ("S(right, left)", M434, NOTHING),
-        ("isolation(left, right)", 0.8813 * M434, 20, 0.01), ("isolation(left, right)", 1.1147 * M434, 20, 0.01),
+        ("S(common, common)", M434, NOTHING), ("S(left, left)", M434, NOTHING),
+        ("S(right, left)", M434, NOTHING),
+        ("isolation(left, right)", 0.8813 * M434, 20, 0.01),
+        ("isolation(left, right)", 1.1147 * M434, 20, 0.01),
         ("insertion_loss(common, left)", 2 * M434, 13.5, 0.05),
     ]),
     "splitter_resistive": ("common left right", [
@@ -168,18 +174,21 @@ EXAMPLES = {
     ]),
     # S of the rounded values of the table: even and odd halves, and a 40-digit nodal solution, agree
     "splitter_three_sections": ("common left right", [
-        ("S(common, common)", 650, 0.00001865005092556155888755), ("S(left, common)", 650, 0.7071067810635730286067j),
+        ("S(common, common)", 650, 0.00001865005092556155888755),
+        ("S(left, common)", 650, 0.7071067810635730286067j),
         ("S(left, left)", 650, 0.00002701601645669825632101),
         ("S(right, left)", 650, -0.00000836596553113669743346),
         ("S(common, common)", 455, -0.04289969380976192079252 + 0.006450615573983009060395j),
         ("S(left, common)", 455, -0.6986198392615483847053 + 0.1048299723602032597564j),
         ("S(right, left)", 780, 0.03053959760598314724728 + 0.02461694628461909925006j),
-        ("max vswr(common)", None, 1.105216905783611, 1e-4), ("max vswr(left)", None, 1.038191746261219, 1e-4),
+        ("max vswr(common)", None, 1.105216905783611, 1e-4),
+        ("max vswr(left)", None, 1.038191746261219, 1e-4),
         ("min isolation(left, right)", None, 27.85723961717485, 1e-2),
     ]),
     "splitter_unequal": ("common far near", [
         ("S(far, common)", M868, 1j * math.sqrt(2 / 3)), ("S(near, common)", M868, 1j * math.sqrt(1 / 3)),
-        ("S(common, common)", M868, NOTHING), ("S(far, far)", M868, NOTHING), ("S(near, near)", M868, NOTHING),
+        ("S(common, common)", M868, NOTHING), ("S(far, far)", M868, NOTHING),
+        ("S(near, near)", M868, NOTHING),
         ("S(near, far)", M868, NOTHING),
         # at 0.8 f0, from a 40-digit nodal solution
         ("S(common, common)", 694.64, 0.04762116683468478641112 + 0.02264778784395971194792j),
@@ -203,11 +212,13 @@ EXAMPLES = {
         ("S(common, common)", M868, NOTHING),
     ]),
     "hybrid_branch_line": ("in through coupled isolated", [
-        ("S(through, in)", M868, -1j * R2), ("S(coupled, in)", M868, -R2), ("S(isolated, in)", M868, NOTHING),
+        ("S(through, in)", M868, -1j * R2), ("S(coupled, in)", M868, -R2),
+        ("S(isolated, in)", M868, NOTHING),
         ("S(in, in)", M868, NOTHING), ("S(coupled, through)", M868, NOTHING),
     ]),
     "hybrid_ring": ("sum left right difference", [
-        ("S(left, sum)", M434, -1j * R2), ("S(right, sum)", M434, -1j * R2), ("S(difference, sum)", M434, NOTHING),
+        ("S(left, sum)", M434, -1j * R2), ("S(right, sum)", M434, -1j * R2),
+        ("S(difference, sum)", M434, NOTHING),
         ("S(right, difference)", M434, -1j * R2), ("S(left, difference)", M434, 1j * R2),
         ("S(right, left)", M434, NOTHING), ("S(sum, sum)", M434, NOTHING), ("S(left, left)", M434, NOTHING),
         ("S(difference, difference)", M434, NOTHING),
@@ -218,7 +229,8 @@ EXAMPLES = {
         *((f"S({port}, in)", f, coupler(f * 1e6)[k]) for f in (400, 600, 1300) for k, port in
           enumerate(("coupled", "through"))),
         ("S(isolated, in)", 600, NOTHING), ("S(in, in)", 600, NOTHING),
-        ("coupling(in, coupled)", 0.78 * M868, 10.5, 0.05), ("coupling(in, coupled)", 1.22 * M868, 10.5, 0.05),
+        ("coupling(in, coupled)", 0.78 * M868, 10.5, 0.05),
+        ("coupling(in, coupled)", 1.22 * M868, 10.5, 0.05),
     ]),
     "hybrid_transformer": ("common left right", [
         *((f"S({a}, {b})", f, value) for f in (1, 10, 500) for a, b, value in
@@ -228,38 +240,45 @@ EXAMPLES = {
     ]),
     "match_l": ("amplifier antenna", [
         ("S(amplifier, amplifier)", M434, NOTHING), ("S(antenna, antenna)", M434, NOTHING),
-        ("return_loss(amplifier)", 0.8758 * M434, 15, 0.01), ("return_loss(amplifier)", 1.1104 * M434, 15, 0.01),
+        ("return_loss(amplifier)", 0.8758 * M434, 15, 0.01),
+        ("return_loss(amplifier)", 1.1104 * M434, 15, 0.01),
         *((f"S({port}, amplifier)", f, l_match(f * 1e6)[k]) for f in (300, 500, 867.84) for k, port in
           enumerate(("amplifier", "antenna"))),
     ]),
     "match_pi": ("radio antenna", [
-        (f"S({port}, radio)", f, pi_match(f * 1e6)[k]) for f in (350, M434, 520) for k, port in
-        enumerate(("radio", "antenna"))
+        *((f"S({port}, radio)", f, pi_match(f * 1e6)[k]) for f in (350, M434, 520) for k, port in
+          enumerate(("radio", "antenna"))),
+        ("insertion_loss(radio, antenna)", M434, 0.49, 0.005),
     ]),
     "match_stub": ("radio", [
-        ("S(radio, radio)", M868, NOTHING), *(("S(radio, radio)", f, stub_match(f * 1e6)) for f in (800, 900)),
+        ("S(radio, radio)", M868, NOTHING),
+        *(("S(radio, radio)", f, stub_match(f * 1e6)) for f in (800, 900)),
     ]),
     "balun_lattice": ("cable antenna", [
-        ("S(antenna, cable)", M434, -1j), ("S(cable, cable)", M434, NOTHING), ("S(antenna, antenna)", M434, NOTHING),
+        ("S(antenna, cable)", M434, -1j), ("S(cable, cable)", M434, NOTHING),
+        ("S(antenna, antenna)", M434, NOTHING),
     ]),
     "diplexer": ("antenna low high", [
         *(("S(antenna, antenna)", f, NOTHING) for f in (100, M434, 613.8, M868, 2000)),
         *((f"share({port}, antenna)", f, shared(f * 1e6)[k]) for f in (100, M434, 613.8, M868, 2000)
           for k, port in enumerate(("low", "high"))),
-        ("insertion_loss(antenna, low)", M434, 0.133, 5e-4), ("insertion_loss(antenna, high)", M868, 0.133, 5e-4),
+        ("insertion_loss(antenna, low)", M434, 0.133, 5e-4),
+        ("insertion_loss(antenna, high)", M868, 0.133, 5e-4),
         # lossless, with the antenna matched: what passes between the two is the product of their shares
         *(("share(high, low)", f, math.prod(shared(f * 1e6))) for f in (M434, 700)),
         ("isolation(low, high)", M434, 15.33, 0.005),
     ]),
     "filter_low_pass": ("transmitter antenna", [
-        *(("size(antenna, transmitter)", f, chebyshev(f * 1e6)) for f in (10, 200, M434, 470, 867.84, 1301.76)),
+        *(("size(antenna, transmitter)", f, chebyshev(f * 1e6))
+          for f in (10, 200, M434, 470, 867.84, 1301.76)),
         ("insertion_loss(transmitter, antenna)", 470, 0.1),
         ("insertion_loss(transmitter, antenna)", 867.84, 30.79, 0.005),
         ("insertion_loss(transmitter, antenna)", 1301.76, 50.51, 0.005),
     ]),
     "pad_pi": ("in out ideal_in ideal_out", [
         (f"S({a}, {b})", f, value) for f in (0, 1000) for a, b, value in
-        (("out", "in", 10 ** -0.5), ("in", "in", 0.0), ("out", "out", 0.0), ("ideal_out", "ideal_in", 10 ** -0.5),
+        (("out", "in", 10 ** -0.5), ("in", "in", 0.0), ("out", "out", 0.0),
+        ("ideal_out", "ideal_in", 10 ** -0.5),
          ("ideal_in", "ideal_in", 0.0), ("ideal_in", "in", 0.0))
     ]),
     "cable_lossy": ("hut mast", [
@@ -268,12 +287,17 @@ EXAMPLES = {
         ("insertion_loss(hut, mast)", M868, 2.546, 5e-4),
     ]),
     "gauge_station": ("transmitter upstream downstream", [
-        (f"S({port}, transmitter)", f, gauge(f * 1e6, 3)[k]) for f in (300, M434, 867.84) for k, port in
-        enumerate(("transmitter", "upstream"))
+        *((f"S({port}, transmitter)", f, gauge(f * 1e6, 3)[k]) for f in (300, M434, 867.84) for k, port in
+          enumerate(("transmitter", "upstream"))),
+        ("insertion_loss(transmitter, downstream)", M434, 7.23, 0.005),
+        ("insertion_loss(transmitter, downstream)", 867.84, 7.23 + 9.2, 0.05),
+        ("return_loss(transmitter)", M434, 19.8, 0.05),
+        ("isolation(upstream, downstream)", M434, 22.7, 0.05),
     ], "run = 3 m"),
     "gauge_station, 12 m": ("transmitter upstream downstream", [
-        (f"S({port}, transmitter)", f, gauge(f * 1e6, 12)[k]) for f in (M434, 867.84) for k, port in
-        enumerate(("transmitter", "upstream"))
+        *((f"S({port}, transmitter)", f, gauge(f * 1e6, 12)[k]) for f in (M434, 867.84) for k, port in
+          enumerate(("transmitter", "upstream"))),
+        ("insertion_loss(transmitter, upstream)", M434, 8.70, 0.005),
     ], "run = 12 m"),
 }
 
@@ -313,6 +337,10 @@ def decibel(value):
     return math.inf if value == 0 else -20 * math.log10(abs(value))
 
 
+def spread(values):
+    return max(values) - min(values)
+
+
 MEASURES = {
     "S": lambda s, to, at: s[to][at],
     "size": lambda s, to, at: abs(s[to][at]),
@@ -323,7 +351,7 @@ MEASURES = {
     "isolation": lambda s, p, q: decibel(s[q][p]),
     "coupling": lambda s, at, to: decibel(s[to][at]),
     "gain": lambda s, at, to: -decibel(s[to][at]),
-    "amplitude_balance": lambda s, at, *to: max(decibel(s[k][at]) for k in to) - min(decibel(s[k][at]) for k in to),
+    "amplitude_balance": lambda s, at, *to: spread([decibel(s[k][at]) for k in to]),
     "phase_balance": lambda s, at, a, b: math.degrees(cmath.phase(s[b][at] / s[a][at])),
 }
 
@@ -371,8 +399,8 @@ def span(text, netlist):
     return hertz(low, netlist), hertz(high, netlist)
 
 
-REQUIRE = re.compile(r"^require\s+(\w+\([^)]*\))\s*(>=|<=|within)\s*(-?[\d.]+)[ \w]*?(?:\.\.\s*(-?[\d.]+)[ \w]*?)?"
-                     r"(?:\s(over|at)\s+(.+?))?$", re.M)
+REQUIRE = re.compile(r"^require\s+(\w+\([^)]*\))\s*(>=|<=|within)\s*(-?[\d.]+)[ \w]*?"
+                     r"(?:\.\.\s*(-?[\d.]+)[ \w]*?)?(?:\s(over|at)\s+(.+?))?$", re.M)
 
 
 def check_requirements(netlist, ports, own, source_at):
@@ -381,8 +409,11 @@ def check_requirements(netlist, ports, own, source_at):
     if len(found) != len(re.findall(r"^require\b", text, re.M)) or len(found) < 2:
         raise Wrong(f"{len(found)} requirements read")
     for m in found:
-        low, high = (0, math.inf) if not m[5] else span(m[6], text) if m[5] == "over" else [hertz(m[6], text)] * 2
-        within = [s for f, s in own.items() if low <= f <= high] if m[5] != "at" else source_at([low]).values()
+        if m[5] == "at":
+            within = list(source_at([hertz(m[6], text)]).values())
+        else:
+            low, high = span(m[6], text) if m[5] else (0, math.inf)
+            within = [s for f, s in own.items() if low <= f <= high]
         if not within:
             raise Wrong(f"no point of the sweep is in {m[0]}")
         bounds = (float(m[3]), math.inf) if m[2] == ">=" else (-math.inf, float(m[3]))
@@ -438,7 +469,8 @@ def main(argv):
                 passed, failed = passed + well, failed + (not well)
                 if not well:
                     print(f"FAILED {name}: {what}: {got}, {expected} expected")
-        except (Wrong, tool.Failed, OSError, ValueError, KeyError, ArithmeticError, subprocess.SubprocessError) as e:
+        except (Wrong, tool.Failed, OSError, ValueError, LookupError, ArithmeticError,
+                subprocess.SubprocessError) as e:
             failed += 1
             print(f"FAILED {name}: {type(e).__name__}: {e}")
     print(f"{passed} passed, {failed} failed")

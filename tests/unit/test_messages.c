@@ -18,6 +18,42 @@ static const struct mistake {
      "a -- line(50 pF, 90 deg @ 1 GHz) -- b\n",
      "2:11-16: error: `50 pF` is a capacitance in F, but `z` of `line` is an impedance in ohm "
      "[wrong-unit]\n"},
+    {"unit case",
+     "sweep at 10 mhz, 20 MHz\n"
+     "a -- 5 ohm -- b\n",
+     "2:10-16: error: `mhz` is not a unit [unit]\n"
+     "    hint: `10 MHz`\n"},
+    {"range unit",
+     "a -- 5 ohm -- b\n"
+     "sweep 900 .. 1100 MHz points 3\n",
+     "3:7-10: error: `900` has no unit: the other end of the range is a frequency in Hz "
+     "[missing-unit]\n"
+     "    hint: write `900 MHz`\n"},
+    {"decimal comma",
+     "a -- 3,3 pF -- b\n",
+     "2:6-12: error: a decimal comma? Numbers have a point [decimal-comma]\n"
+     "    hint: `3.3 pF`\n"},
+    {"letter for unit",
+     "a -- 100k -- b\n",
+     "2:6-10: error: `k` is not a unit [unit]\n"
+     "    hint: a prefix needs its unit: `100 kohm`, `100 kHz`\n"},
+    {"letter for point",
+     "a -- 4k7 -- b\n",
+     "2:6-9: error: `k7` is not a unit [unit]\n"
+     "    hint: a point and a unit: `4.7 kohm`\n"},
+    {"imaginary suffix",
+     "a -- impedance((10 + 3j)*1 ohm) -- b\n",
+     "2:22-24: error: `j` is not a unit [unit]\n"
+     "    hint: the imaginary unit is a factor: `3*j`\n"},
+    {"inch",
+     "a -- line(50 ohm, 5 in) -- b\n",
+     "2:19-23: error: `in` is not a unit [unit]\n"
+     "    hint: `5 inch`\n"},
+    {"times",
+     "z0 = 50 ohm\n"
+     "a -- 2 z0 -- b\n",
+     "3:6-10: error: `z0` is not a unit [unit]\n"
+     "    hint: a product is written with a star: `2*z0`\n"},
     {"unknown part",
      "a -- resitor(50 ohm) -- b\n",
      "2:6-13: error: there is no part, network or function `resitor` [unknown-part]\n"
@@ -96,6 +132,16 @@ static const struct mistake {
      "a -- z0 -- b\n",
      "3:1-3: error: `z0` is defined twice [defined-twice]\n"
      "    note 2:1: `z0` is first defined here\n"},
+    {"missing brace",
+     "a -- 50 ohm -- b\n"
+     "for k in 1 .. 3 {\n"
+     "    a -- k*10 ohm -- b\n",
+     "3:17-18: error: this `{` is not closed [open-brace]\n"
+     "    hint: close it with `}`\n"},
+    {"missing parenthesis",
+     "a -- line(50 ohm, 90 deg @ 1 GHz -- b\n",
+     "2:10-11: error: this `(` is not closed [open-bracket]\n"
+     "    hint: close it with `)`\n"},
     {"unreadable data",
      "a -- touchstone(\"nowhere.s2p\") -- b\n",
      "2:17-30: error: `nowhere.s2p` cannot be read: there is no such file [unreadable-file]\n"},
@@ -230,11 +276,16 @@ static const struct mistake {
      "a -- line(50 ohm, 2*l) -- b\n",
      "3:21-22: error: `l` holds at one frequency: it is passed on to a part, never calculated with "
      "[at-in-arithmetic]\n"},
+    {"tolerance of a port",
+     "port c: 50 ohm +/- 5%\n"
+     "a -- 5 ohm -- b -- 5 ohm -- c\n",
+     "2:9-22: error: `50 ohm +/- 5%` has a tolerance: a port's impedance may have none "
+     "[tolerance-here]\n"},
     {"frequency of a port",
      "port c: 50 ohm*frequency/(1 GHz)\n"
      "a -- 5 ohm -- b -- 5 ohm -- c\n",
-     "2:9-33: error: `50 ohm*frequency/(1 GHz)` depends on `frequency`, which a port's impedance may "
-     "not [frequency-here]\n"},
+     "2:9-33: error: `50 ohm*frequency/(1 GHz)` depends on `frequency`: a port's impedance may not "
+     "[frequency-here]\n"},
     {"negative port",
      "port c: -(50 ohm)\n"
      "a -- 5 ohm -- b -- 5 ohm -- c\n",
@@ -243,6 +294,10 @@ static const struct mistake {
     {"negative resistance",
      "a -- -5 ohm -- b\n",
      "2:6-12: warning: `-5 ohm` is a negative resistance [negative-value]\n"},
+    {"shunt label",
+     "a -- c1: shunt 3 pF -- 5 ohm -- b\n",
+     "2:6-15: error: a label stands behind `shunt`, not before it [label-before-shunt]\n"
+     "    hint: `shunt c1: ...`\n"},
     {"node in parentheses",
      "a -- (3 ohm -- a -- 4 ohm) -- b\n",
      "2:16-17: error: `a` is a node: a chain in parentheses, or one that is a value, holds parts and "
@@ -346,7 +401,7 @@ static const struct mistake {
      "5:19-22: error: the first case is an impedance in ohm, but this one is an inductance in H "
      "[unequal-dimensions]\n"
      "6:11-25: error: a range of `cases` needs its number of points [missing-points]\n"
-     "8:4-5: error: `t` depends on a `tune` name, which a condition may not [tune-here]\n"},
+     "8:4-5: error: `t` depends on a `tune` name: a condition may not [tune-here]\n"},
     {"drives",
      "a -- 5 ohm -- b\n"
      "drive a: 10 ohm\n"
@@ -430,6 +485,42 @@ static const struct mistake {
      "7:5-15: error: `sqrt` takes 1 argument, not 2 [argument-count]\n"
      "8:5-12: error: `asin(2)` takes numbers from -1 to 1 only [outside-domain]\n"
      "9:5-10: error: `ln(0)` is the logarithm of zero [logarithm-of-zero]\n"},
+    {"ambiguous unit",
+     "m = 3\n"
+     "a -- attenuator(0.2 dB/m) -- b\n",
+     "3:17-25: error: `0.2 dB/m` could be a unit or a division by the value `m` [ambiguous-unit]\n"
+     "    hint: write blanks around the `/` to divide; for the unit, give the value another name\n"},
+    {"two readings",
+     "a -- 1/2 ohm -- b\n",
+     "2:6-13: error: `1/2 ohm` has two readings [two-readings]\n"
+     "    hint: `(1/2)*1 ohm`, or `1/(2 ohm)`\n"},
+    {"missing brace of a network",
+     "a -- cell() -- b\n"
+     "network cell() {\n"
+     "    port p, q\n"
+     "    p -- 5 ohm -- q\n"
+     "sweep at 1 GHz\n",
+     "3:16-17: error: this `{` is not closed [open-brace]\n"
+     "    hint: close it with `}`\n"},
+    {"broken definitions are known",
+     "z0 = 50 ohm * )\n"
+     "coil(l) = inductor(l,, q)\n"
+     "network cell(z {\n"
+     "    port p, q\n"
+     "}\n"
+     "a -- z0 -- coil(1 nH) -- cell(1) -- b\n"
+     "a -- 2*z0 -- b\n",
+     "2:15-16: error: a value or a part is expected here, not `)` [expected]\n"
+     "3:22-23: error: a value or a part is expected here, not `,` [expected]\n"
+     "4:13-14: error: this `(` is not closed [open-bracket]\n"
+     "    hint: close it with `)`\n"},
+    {"shunt under parallel",
+     "a -- 3 ohm || shunt 3 pF -- b\n",
+     "2:15-20: error: `shunt` may not stand under `||` [shunt-in-parallel]\n"},
+    {"typographic minus",
+     "a -- −5 ohm -- b\n",
+     "2:6-7: error: this is the typographic minus, U+2212 [typographic-minus]\n"
+     "    hint: write `-`, the hyphen of the keyboard\n"},
 };
 
 static char *messages_of(const char *path, const char *netlist) {
@@ -497,7 +588,7 @@ static void overrides_are_checked(void **state) {
         strstr(text, "--set:1:4-6: error: `75` has no unit: `z0` is an impedance in ohm [missing-unit]\n"
                      "    hint: write `75 ohm`\n"));
     assert_non_null(
-        strstr(text, "--set:1:1-9: error: the netlist has no value `zz` at its top level [undefined-name]\n"
+        strstr(text, "--set:1:1-3: error: the netlist has no value `zz` at its top level [undefined-name]\n"
                      "    hint: did you mean `z0`?\n"));
     assert_int_equal(e.report.errors, 3);
     free(text);

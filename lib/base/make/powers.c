@@ -1,5 +1,5 @@
-/* Writes the table of powers of ten that numbers are converted with: for every exponent k the upper 128 bits of
- * 10^k, rounded up, so that 10^k <= g * 2^(floor(log2 10^k) - 127). Run by the build. */
+/* Writes the table of powers of ten that numbers are converted with: for every exponent k the upper 128 bits
+ * of 10^k, rounded up, so that 10^k <= g * 2^(floor(log2 10^k) - 127). Run by the build. */
 #include <stdint.h>
 #include <stdio.h>
 #include <string.h>
@@ -50,7 +50,8 @@ static void print_upper(const big *b, int inexact) {
 
 int main(void) {
     printf("/* Made by powers.c. */\n#include \"base/powers.h\"\n\n"
-           "const anb__power anb__powers[%d] = {\n", MOST - LEAST + 1);
+           "const anb__power anb__powers[%d] = {\n",
+           MOST - LEAST + 1);
     for (int k = LEAST; k <= MOST; k++) {
         big b = {{0}};
         int inexact = 0;
