@@ -20,7 +20,7 @@ anb__token anb__lex(const char *text, uint32_t length, uint32_t at, bool comment
         string  = "\"" ([^"\\\n\x00] | "\\" ["\\])* "\"";
         blank   = [ \t\r] | "\u00a0" | "\u2009" | "\u202f";
 
-        $           { token.start = token.end = length; return token; }
+        $           { token.kind = ANB__TOKEN_END; token.start = token.end = length; return token; }
         blank+      { continue; }
         "\n"        { token.lines++; continue; }
         "#"         { token.kind = ANB__TOKEN_COMMENT; goto comment; }

@@ -117,9 +117,11 @@ static bool read_fast(const decimal *d, double *value) {
     wide p = product(&anb__powers[k - ANB__LEAST_POWER], d->digits << shift, &exponent, &more);
     /* g is too large by less than 1 in 2^128, the digits too small by less than 1 in 2^64 >> shift */
     wide below = 3, above = d->more ? ((wide)1 << (66 + shift)) : 3;
-    if (shift > 58 && d->more) return false;
-    double low = round_product(p - below, true, exponent),
-           high = round_product(p + above < p ? ~(wide)0 : p + above, true, exponent);
+    if ((shift > 58 && d->more) || p + above < p) {
+        *value = round_product(p, true, exponent);
+        return false;
+    }
+    double low = round_product(p - below, true, exponent), high = round_product(p + above, true, exponent);
     *value = low;
     return low == high;
 }
@@ -190,11 +192,10 @@ static long read_big(const decimal *d, big *b) {
 static int against_middle(const decimal *d, double value) {
     big left, right = {{0}, 0};
     long ten = read_big(d, &left);
-    int exponent;
-    double mantissa = frexp(value, &exponent);
-    exponent = exponent < -1021 ? -1074 : exponent - 53;
-    uint64_t c =
-        value == 0 ? 0 : (uint64_t)ldexp(mantissa, (value == 0 ? 0 : (int)(ilogb(value) + 1) - exponent));
+    uint64_t bits;
+    memcpy(&bits, &value, sizeof bits);
+    int biased = (int)(bits >> 52), exponent = (biased ? biased : 1) - 1075;
+    uint64_t c = (bits & ((1ull << 52) - 1)) | (biased ? 1ull << 52 : 0);
     uint64_t middle = 2 * c + 1;
     right.word[0] = (uint32_t)middle;
     right.word[1] = (uint32_t)(middle >> 32);

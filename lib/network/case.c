@@ -9,7 +9,8 @@
 static const char *quantity_text(anb__expander *x, double value, anb__dimension dimension) {
     char number[ANB__NUMBER_SIZE + 1], unit[64], text[ANB__NUMBER_SIZE + 80];
     number[anb__number_write(value, number)] = '\0';
-    bool plain = anb__same_dimension(dimension, anb__plain), angle = anb__same_dimension(dimension, anb__angle);
+    bool plain = anb__same_dimension(dimension, anb__plain),
+         angle = anb__same_dimension(dimension, anb__angle);
     const char *name = plain ? "" : angle ? "wave" : anb__dimension_name(dimension, unit, sizeof unit);
     int length = snprintf(text, sizeof text, "%s%s%s", number, *name ? " " : "", name);
     return anb__arena_text(&x->network->arena, text, (size_t)length);
@@ -57,7 +58,9 @@ void anb__list_case(anb__expander *x, const anb__tree *tree) {
     anb__value value = anb__evaluate(x, tree->first);
     double points = value.count;
     const anb__tree *given = tree->first->next;
-    if (value.kind == ANB__VALUE_RANGE && !anb__wanted_whole(x, given->first, "the number of cases", 1, &points)) return;
+    if (value.kind == ANB__VALUE_RANGE &&
+        !anb__wanted_whole(x, given->first, "the number of cases", 1, &points))
+        return;
     uint32_t count = (uint32_t)points;
     const char **texts = anb__arena_take(&x->network->arena, count * sizeof *texts);
     if (value.kind == ANB__VALUE_RANGE) range_texts(x, value.bounds, texts, count);

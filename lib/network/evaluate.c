@@ -157,9 +157,11 @@ static bool is_binary(const anb__tree *tree) {
 /* `a + b + c + ...` leans to the left and may be long, so it is walked without recursion: down to
  * its first operand, then up again. */
 static anb__value evaluate_binary(anb__expander *x, const anb__tree *tree) {
+    enum { SHORT = 4 };
+    const anb__tree *few[SHORT] = {NULL}, **spine = few;
     uint32_t count = 0;
     for (const anb__tree *t = tree; is_binary(t); t = t->first) count++;
-    const anb__tree **spine = anb__arena_take(&x->scratch, count * sizeof *spine);
+    if (count > SHORT) spine = anb__arena_take(&x->scratch, count * sizeof *spine);
     uint32_t at = count;
     for (const anb__tree *t = tree; is_binary(t); t = t->first) spine[--at] = t;
     anb__quantity a, b;

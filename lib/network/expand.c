@@ -119,6 +119,24 @@ static void expand(anb__expander *x) {
     anb__finish(x);
 }
 
+static bool stands_before(anb__span a, anb__span b) {
+    return a.source != b.source ? a.source < b.source : a.start < b.start;
+}
+
+/* The parser's messages and ours, in the order of the text. There are few. */
+static void sort_messages(anb__report *report) {
+    anb__diagnostic *rest = report->first;
+    report->first = report->last = NULL;
+    while (rest) {
+        anb__diagnostic *d = rest, **at = &report->first;
+        rest = rest->next;
+        while (*at && !stands_before(d->span, (*at)->span)) at = &(*at)->next;
+        d->next = *at;
+        *at = d;
+        if (!d->next) report->last = d;
+    }
+}
+
 /* Everything that is allocated on the way jumps here when memory is gone. */
 static anb_status expand_guarded(anb__expander *x) {
     jmp_buf escape;
@@ -126,7 +144,10 @@ static anb_status expand_guarded(anb__expander *x) {
     x->scratch.escape = x->report->arena->escape = x->names->arena->escape = x->network->arena.escape =
         &escape;
     if (setjmp(escape)) status = ANB_MEMORY;
-    else expand(x);
+    else {
+        expand(x);
+        sort_messages(x->report);
+    }
     if (status == ANB_OK && x->report->errors) status = ANB_INVALID;
     return status;
 }

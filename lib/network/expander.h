@@ -14,7 +14,8 @@ enum {
     ANB__LIMIT_LOOP = 1000000,
     ANB__LIMIT_ROUNDS = 10000000, /* rounds of loops and expansions together */
     ANB__LIMIT_POINTS = 10000000,
-    ANB__LIMIT_CASES = 1000
+    ANB__LIMIT_CASES = 1000,
+    ANB__RECENT = 64
 };
 
 /* A network or an own kind of part, as it is defined. */
@@ -125,6 +126,7 @@ typedef struct anb__expander {
 
     anb__symbol **locals;     /* values of the open loops, innermost last */
     uint32_t local_count, local_capacity;
+    const anb__item *recent[ANB__RECENT]; /* parts, so that a loop does not make the same one again */
     anb__step *steps;         /* of the chains that are being placed */
     uint32_t step_count, step_capacity;
 

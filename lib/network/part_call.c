@@ -204,6 +204,12 @@ static void sort(anb__argument *arguments, unsigned count) {
         }
 }
 
+/* Arguments that are equal are one already. */
+static bool is_same(const anb__item *a, const anb__item *b) {
+    return a->arguments == b->arguments && a->part == b->part && a->argument_count == b->argument_count &&
+           a->span.source == b->span.source && a->span.start == b->span.start && a->span.end == b->span.end;
+}
+
 anb__value anb__part_item(anb__expander *x, anb__span span, anb__part_kind kind, anb__argument *arguments,
                           unsigned count) {
     if (x->region->assumed) count = anb__add_assumed(x, kind, arguments, count);
@@ -211,7 +217,9 @@ anb__value anb__part_item(anb__expander *x, anb__span span, anb__part_kind kind,
     anb__item item = {.kind = ANB__ITEM_PART, .part = (uint8_t)kind, .span = span};
     item.argument_count = (uint16_t)count;
     item.arguments = anb__share_arguments(x, arguments, count);
-    return anb__item_value(x, &item);
+    const anb__item **recent = &x->recent[span.start % ANB__RECENT];
+    if (!*recent || !is_same(*recent, &item)) *recent = anb__new_item(x, &item);
+    return (anb__value){.kind = ANB__VALUE_ITEM, .item = *recent};
 }
 
 anb__value anb__part_call(anb__expander *x, const anb__tree *tree, anb__part_kind kind) {

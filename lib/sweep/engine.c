@@ -186,14 +186,16 @@ static anb_status solve_in_series(anb__bench *bench, double hz) {
 
 static anb_status make_tableau(anb__bench *bench) {
     if (bench->has_tableau) return ANB_OK;
-    bench->has_tableau = true;
-    return anb__tableau_new(bench->engine->network, &bench->engine->nodes, &bench->tableau);
+    anb_status status = anb__tableau_new(bench->engine->network, &bench->engine->nodes, &bench->tableau);
+    bench->has_tableau = status == ANB_OK;
+    if (status != ANB_OK) anb__tableau_clear(&bench->tableau);
+    return status;
 }
 
 static anb_status make_pivoted(anb__bench *bench) {
     const anb__tableau *t = &bench->tableau;
     if (bench->pivoted) return ANB_OK;
-    bench->values = malloc(((size_t)t->entry_count + 1) * sizeof *bench->values);
+    if (!bench->values) bench->values = malloc(((size_t)t->entry_count + 1) * sizeof *bench->values);
     if (!bench->values) return ANB_MEMORY;
     return anb__pivoted_new(t->size, t->rows, t->columns, t->entry_count, t->probes, t->network->port_count,
                             &bench->pivoted);
