@@ -31,7 +31,7 @@ static bool find_text(reading *r, const char **text, uint32_t *length) {
     *text = anb__read_text(&r->netlist->arena, r->path, length);
     if (*text) return true;
     anb__error(&r->netlist->report, nowhere(), "unreadable", "`%s` cannot be read: %s", r->path,
-               strerror(errno));
+               anb__reading_problem(errno));
     return false;
 }
 

@@ -63,7 +63,9 @@ void anb__list_case(anb__expander *x, const anb__tree *tree) {
         return;
     uint32_t count = (uint32_t)points;
     const char **texts = anb__arena_take(&x->network->arena, count * sizeof *texts);
-    if (value.kind == ANB__VALUE_RANGE) range_texts(x, value.bounds, texts, count);
-    else list_texts(x, tree->first, texts, count);
+    if (value.kind == ANB__VALUE_RANGE)
+        range_texts(x, value.bounds, texts, count);
+    else
+        list_texts(x, tree->first, texts, count);
     *new_case(x->network) = (anb__case){tree->name->text, texts, count};
 }

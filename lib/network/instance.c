@@ -113,6 +113,7 @@ static void expand_inside(anb__expander *x, const anb__item *item, anb__region *
     anb__symbol *newest = x->symbols.newest;
     anb__far_node **far_end = x->far_nodes_end;
     uint32_t spaces = x->labelled_spaces;
+    unsigned errors = x->report->errors;
     outside out = go_inside(x, region);
     definition->active++;
     bind_parameters(x, definition, item->values);
@@ -120,7 +121,7 @@ static void expand_inside(anb__expander *x, const anb__item *item, anb__region *
     definition->active--;
     go_outside(x, &out);
     bool closed = !region->space->label && far_end == x->far_nodes_end && spaces == x->labelled_spaces;
-    if (closed && !x->report->errors) anb__symbols_forget(&x->symbols, newest);
+    if (closed && errors == x->report->errors) anb__symbols_forget(&x->symbols, newest);
 }
 
 void anb__place_network(anb__expander *x, const anb__item *item, anb__span span,

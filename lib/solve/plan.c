@@ -8,14 +8,14 @@
 #include "solve/plan_emit.h"
 
 enum {
-    FEW_PORTS = 3,          /* for so many, one candidate is enough in a system of moderate size */
-    FEW_UNKNOWNS = 12,      /* up to so many, ports come last; beyond, they are ordered with the others */
+    FEW_PORTS = 3,     /* for so many, one candidate is enough in a system of moderate size */
+    FEW_UNKNOWNS = 12, /* up to so many, ports come last; beyond, they are ordered with the others */
     MODERATE = 200,
     FIRST_LEVEL = 32 << 10, /* bytes of the caches that a block of slots should fit into */
     SECOND_LEVEL = 384 << 10,
     MOST_GROUPS = 16
 };
-#define GROWTH_LIMIT 3e3 /* growth that still leaves about 1e-12, see solve/kernels.h */
+#define GROWTH_LIMIT 3e3   /* growth that still leaves about 1e-12, see solve/kernels.h */
 #define MANY_PIVOTS 64.0   /* so many, each at the limit, count for one: errors add up like random ones */
 #define LEAST_PATIENCE 1e5 /* steps spent on the second candidate however cheap the first one is */
 
@@ -92,8 +92,8 @@ static double try_order(compiler *c, anb__order_rule rule, double patience, anb_
     return place_block(c->system, out);
 }
 
-/* Ports that go last leave the rest to be eliminated without the terminations that damp it: long chains then lose
- * digits at their own resonances. So a small gain is not worth having them last. */
+/* Ports that go last leave the rest to be eliminated without the terminations that damp it: long chains then
+ * lose digits at their own resonances. So a small gain is not worth having them last. */
 #define WORTH_HAVING 1.2
 
 static void choose_layout(compiler *c, anb__layout *out) {

@@ -80,8 +80,10 @@ static double peak_flops(const char *kernel) {
     for (int round = 0; round < 5; round++) {
         double start = now();
 #if defined(__x86_64__)
-        if (!strcmp(kernel, "avx512")) sink += burn_512(n), width = 8;
-        else if (!strcmp(kernel, "avx2")) sink += burn_256(n), width = 4;
+        if (!strcmp(kernel, "avx512"))
+            sink += burn_512(n), width = 8;
+        else if (!strcmp(kernel, "avx2"))
+            sink += burn_256(n), width = 4;
 #endif
         double rate = 2 * 12 * width * (double)n / (now() - start);
         if (rate > best) best = rate;
@@ -147,7 +149,8 @@ static void fill_values(subject *x, const place *places, matrices *m) {
         }
         for (uint32_t k = 0; k < m->entries; k++)
             for (int part = 0; part < 2; part++)
-                m->values[2 * (p * m->entries + k) + (size_t)part] = slots[places[k].entry * 16 + 8 * (size_t)part + p % 8];
+                m->values[2 * (p * m->entries + k) + (size_t)part] =
+                    slots[places[k].entry * 16 + 8 * (size_t)part + p % 8];
     }
     free(slots);
     free(scratch);
@@ -160,7 +163,8 @@ static void build_matrices(subject *x, uint64_t points, matrices *m) {
     *m = (matrices){.size = a->unknown_count, .points = points};
     for (uint32_t e = 0; e < a->entry_count; e++) {
         places[m->entries++] = (place){a->rows[e], a->columns[e], e};
-        if (a->symmetric && a->rows[e] != a->columns[e]) places[m->entries++] = (place){a->columns[e], a->rows[e], e};
+        if (a->symmetric && a->rows[e] != a->columns[e])
+            places[m->entries++] = (place){a->columns[e], a->rows[e], e};
     }
     qsort(places, m->entries, sizeof *places, by_place);
     m->start = take((m->size + 1) * sizeof *m->start);
@@ -196,10 +200,12 @@ static double difference(const subject *x, const double *solution, const double 
         for (uint32_t from = 0; from < (packed ? to + 1 : x->ports); from++) {
             size_t element = packed ? (size_t)to * (to + 1) / 2 + from : (size_t)to * x->ports + from;
             const double *ours = s + (point / 8 * x->elements + element) * 16 + point % 8;
-            anb__complex v = {0, 0}, zt = x->netlist->network.ports[to].z, zf = x->netlist->network.ports[from].z;
+            anb__complex v = {0, 0}, zt = x->netlist->network.ports[to].z,
+                         zf = x->netlist->network.ports[from].z;
             for (uint32_t i = nodes->first_port_term[to]; i < nodes->first_port_term[to + 1]; i++) {
                 size_t at = 2 * ((size_t)from * n + nodes->port_terms[i].unknown);
-                v = anb__cadd(v, anb__cscale(anb__cx(solution[at], solution[at + 1]), nodes->port_terms[i].sign));
+                v = anb__cadd(
+                    v, anb__cscale(anb__cx(solution[at], solution[at + 1]), nodes->port_terms[i].sign));
             }
             v = anb__cdiv(anb__cscale(v, 2 * sqrt(zt.re * zf.re)), anb__cmul(zt, zf));
             if (to == from) v = anb__csub(v, anb__cdiv(anb__cconj(zt), zt));
@@ -240,9 +246,11 @@ static double run_klu(const subject *x, const matrices *m, const double *s, doub
     return time / (double)m->points;
 }
 
-static double run_lapack(const subject *x, const matrices *m, uint64_t points, const double *s, double *worst) {
+static double run_lapack(const subject *x, const matrices *m, uint64_t points, const double *s,
+                         double *worst) {
     size_t n = m->size, size = 2 * n * x->ports;
-    double *b = take(size * sizeof *b), *start_b = take(size * sizeof *b), *dense = take(2 * n * n * sizeof *dense);
+    double *b = take(size * sizeof *b), *start_b = take(size * sizeof *b),
+           *dense = take(2 * n * n * sizeof *dense);
     lapack_int *pivots = take(n * sizeof *pivots);
     double time = 0;
     sources(x, start_b);
@@ -251,10 +259,12 @@ static double run_lapack(const subject *x, const matrices *m, uint64_t points, c
         memset(dense, 0, 2 * n * n * sizeof *dense);
         for (uint32_t c = 0; c < m->size; c++)
             for (int k = m->start[c]; k < m->start[c + 1]; k++)
-                memcpy(dense + 2 * (c * n + (size_t)m->row[k]), m->values + 2 * (p * m->entries + (size_t)k), 16);
+                memcpy(dense + 2 * (c * n + (size_t)m->row[k]), m->values + 2 * (p * m->entries + (size_t)k),
+                       16);
         memcpy(b, start_b, size * sizeof *b);
-        if (LAPACKE_zgesv(LAPACK_COL_MAJOR, (lapack_int)n, (lapack_int)x->ports, (lapack_complex_double *)dense,
-                          (lapack_int)n, pivots, (lapack_complex_double *)b, (lapack_int)n))
+        if (LAPACKE_zgesv(LAPACK_COL_MAJOR, (lapack_int)n, (lapack_int)x->ports,
+                          (lapack_complex_double *)dense, (lapack_int)n, pivots, (lapack_complex_double *)b,
+                          (lapack_int)n))
             die("zgesv finds a point singular");
         time += now() - start;
         double error = difference(x, b, s, p);
@@ -271,7 +281,8 @@ static double compile_time(const anb_netlist *netlist) {
     double times[MOST_ROUNDS];
     for (int i = 0; i < MOST_ROUNDS; i++) {
         anb__engine engine;
-        if (anb__engine_new(&netlist->network, &netlist->grid, getenv("ANB_KERNEL"), &engine) != ANB_OK) die("out of memory");
+        if (anb__engine_new(&netlist->network, &netlist->grid, getenv("ANB_KERNEL"), &engine) != ANB_OK)
+            die("out of memory");
         times[i] = engine.compile_seconds;
         anb__engine_clear(&engine);
     }
@@ -285,12 +296,14 @@ static void prepare(const anb_netlist *netlist, uint64_t points, subject *x) {
         die("out of memory");
     double low, high;
     x->points = points ? points : netlist->grid.count;
-    if (anb__grid_fill(&netlist->grid, 0, 1, &low) || anb__grid_fill(&netlist->grid, netlist->grid.count - 1, 1, &high))
+    if (anb__grid_fill(&netlist->grid, 0, 1, &low) ||
+        anb__grid_fill(&netlist->grid, netlist->grid.count - 1, 1, &high))
         die("out of memory");
     x->hz = take(x->points * sizeof *x->hz);
     for (uint64_t k = 0; k < x->points; k++)
         x->hz[k] = low + (high - low) * (double)k / (double)(x->points > 1 ? x->points - 1 : 1);
-    x->elements = x->engine.assembly.symmetric ? (size_t)x->ports * (x->ports + 1) / 2 : (size_t)x->ports * x->ports;
+    x->elements =
+        x->engine.assembly.symmetric ? (size_t)x->ports * (x->ports + 1) / 2 : (size_t)x->ports * x->ports;
 }
 
 /* One netlist at one number of points; true where the answers agree. */
@@ -318,10 +331,11 @@ static bool measure(const anb_netlist *netlist, const char *name, uint64_t point
     double a = median(ours, rounds), b = median(klu, rounds), c = median(lapack, rounds);
     const char *kernel = x.engine.kernel->name;
     double flops = 8 * (double)anb__plan_operations(x.engine.plan) / a, peak = peak_flops(kernel);
-    printf("%-16s %8llu points %6u unknowns %3u ports  ours %10.1f ns  KLU %10.1f ns (%5.1f x)  zgesv %11.1f ns (%6.1f x)"
+    printf("%-16s %8llu points %6u unknowns %3u ports  ours %10.1f ns  KLU %10.1f ns (%5.1f x)  zgesv %11.1f "
+           "ns (%6.1f x)"
            "  peak %4.2f  compile %6.1f us  differ %.1e  pivoted %llu\n",
-           name, (unsigned long long)x.points, x.engine.assembly.unknown_count, x.ports, 1e9 * a, 1e9 * b, b / a, 1e9 * c,
-           c / a, peak > 0 ? flops / peak : 0, 1e6 * compile_time(netlist), worst,
+           name, (unsigned long long)x.points, x.engine.assembly.unknown_count, x.ports, 1e9 * a, 1e9 * b,
+           b / a, 1e9 * c, c / a, peak > 0 ? flops / peak : 0, 1e6 * compile_time(netlist), worst,
            (unsigned long long)x.bench.pivoted_points);
     anb__bench_clear(&x.bench);
     anb__engine_clear(&x.engine);

@@ -9,7 +9,7 @@ In README.md and docs/*.md
     excerpt, and is passed over);
   - in a block ```console, a line `$ COMMAND` is run by a shell in that folder, where `anabranch` is the
     program and netlists/ are the examples, and what follows it is what it prints, both streams together.
-    A line `...` stands for any number of lines.
+    A line `...` stands for any number of lines. The plain kernel is used, whose last digits no machine changes.
 `--update` writes the real output into the documents instead. The last line is `N passed, N failed`.
 """
 import os, re, shutil, subprocess, sys, tempfile
@@ -19,7 +19,7 @@ BLOCK = re.compile(r"(?:<!-- file: (?P<name>\S+) -->\n)?^```(?P<kind>anab|consol
 
 
 def run(command, folder):
-    env = dict(os.environ, PATH=os.path.join(folder, ".bin") + ":" + os.environ["PATH"], NO_COLOR="1", LC_ALL="C")
+    env = dict(os.environ, PATH=os.path.join(folder, ".bin") + ":" + os.environ["PATH"], NO_COLOR="1", LC_ALL="C", ANB_KERNEL="plain")
     done = subprocess.run(["bash", "-c", command], cwd=folder, env=env, stdin=subprocess.DEVNULL,
                           stdout=subprocess.PIPE, stderr=subprocess.STDOUT, timeout=120)
     return done.stdout.decode("utf-8", "replace")

@@ -18,7 +18,8 @@ static char *formatted(const char *text) {
     size_t length;
     anb_context *context = anb_context_new();
     assert_non_null(context);
-    if (anb_format(context, "test.anab", text, strlen(text), &out, &length) != ANB_OK) fail_msg("refused:\n%s", text);
+    if (anb_format(context, "test.anab", text, strlen(text), &out, &length) != ANB_OK)
+        fail_msg("refused:\n%s", text);
     assert_int_equal(strlen(out), length);
     anb_context_free(context);
     return out;
@@ -60,15 +61,18 @@ static void test_comments(void **state) {
     (void)state;
     gives("# head  \na = 1   # one\n\n# two\nb = 2", "# head\na = 1  # one\n\n# two\nb = 2\n");
     gives("a -- r # here\n -- b # there", "a -- r  # here\n    -- b  # there\n");
-    gives("network x() { # why\n# inside\na -- r -- b\n} # end", "network x() {  # why\n    # inside\n    a -- r -- b\n}  # end\n");
+    gives("network x() { # why\n# inside\na -- r -- b\n} # end",
+          "network x() {  # why\n    # inside\n    a -- r -- b\n}  # end\n");
     gives("z = [1, # one\n 2] # two", "z = [1,  # one\n    2]  # two\n");
 }
 
 static void test_long_lines(void **state) {
     (void)state;
-    char *out = formatted("first_node -- line(50 ohm, 90 deg @ 1 GHz) -- second_node -- line(70 ohm, 45 deg @ 1 GHz, "
-                          "loss = 0.1 dB) -- shunt 3.3 pF -- last_node");
-    for (const char *line = out; *line; line = strchr(line, '\n') + 1) assert_true(strcspn(line, "\n") <= 100);
+    char *out =
+        formatted("first_node -- line(50 ohm, 90 deg @ 1 GHz) -- second_node -- line(70 ohm, 45 deg @ 1 GHz, "
+                  "loss = 0.1 dB) -- shunt 3.3 pF -- last_node");
+    for (const char *line = out; *line; line = strchr(line, '\n') + 1)
+        assert_true(strcspn(line, "\n") <= 100);
     char *again = formatted(out);
     assert_string_equal(again, out);
     anb_text_free(again);
@@ -87,8 +91,8 @@ static char *read_file(const char *path) {
     return text;
 }
 
-/* The blanks between two tokens of one statement in another way each time: more, none where that is allowed, or line ends
- * inside brackets and after operators. */
+/* The blanks between two tokens of one statement in another way each time: more, none where that is allowed,
+ * or line ends inside brackets and after operators. */
 static char *mangled(const char *text) {
     char *out = calloc(4, strlen(text) + 16), *to = out;
     uint32_t length = (uint32_t)strlen(text), at = 0;
@@ -102,10 +106,11 @@ static char *mangled(const char *text) {
         bool operators = before.kind == ANB__TOKEN_DASHES || before.kind == ANB__TOKEN_IS;
         for (uint32_t i = 0; i < token.lines; i++) *to++ = '\n';
         bool was_apart = token.start > before.end;
-        if (!token.lines && (inside || (operators && !comment)) && turn % 3 == 0 && token.kind != ANB__TOKEN_LEFT_BRACKET &&
-            before.kind != ANB__TOKEN_NUMBER && was_apart)
+        if (!token.lines && (inside || (operators && !comment)) && turn % 3 == 0 &&
+            token.kind != ANB__TOKEN_LEFT_BRACKET && before.kind != ANB__TOKEN_NUMBER && was_apart)
             *to++ = '\n';
-        if (was_apart || (token.kind == ANB__TOKEN_DASHES && turn % 2)) to += sprintf(to, "%s", turn % 2 ? "  \t" : " ");
+        if (was_apart || (token.kind == ANB__TOKEN_DASHES && turn % 2))
+            to += sprintf(to, "%s", turn % 2 ? "  \t" : " ");
         memcpy(to, text + token.start, token.end - token.start);
         to += token.end - token.start;
         brackets += token.kind == ANB__TOKEN_LEFT_PARENTHESIS || token.kind == ANB__TOKEN_LEFT_BRACKET;
@@ -148,8 +153,8 @@ static void test_mistakes(void **state) {
 }
 
 int main(void) {
-    const struct CMUnitTest tests[] = {cmocka_unit_test(test_blanks),     cmocka_unit_test(test_lines),
-                                       cmocka_unit_test(test_comments),   cmocka_unit_test(test_long_lines),
-                                       cmocka_unit_test(test_examples),   cmocka_unit_test(test_mistakes)};
+    const struct CMUnitTest tests[] = {cmocka_unit_test(test_blanks),   cmocka_unit_test(test_lines),
+                                       cmocka_unit_test(test_comments), cmocka_unit_test(test_long_lines),
+                                       cmocka_unit_test(test_examples), cmocka_unit_test(test_mistakes)};
     return cmocka_run_group_tests(tests, NULL, NULL) ? 1 : 0;
 }

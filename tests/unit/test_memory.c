@@ -1,5 +1,6 @@
 /* Memory that runs out: every allocation of a whole job fails once, the n-th for all n, those of KLU
- * included. Each time the call ends with ANB_MEMORY, or well where it could do without, and nothing is left behind. */
+ * included. Each time the call ends with ANB_MEMORY, or well where it could do without, and nothing is left
+ * behind. */
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stddef.h>
@@ -38,7 +39,9 @@ void *__wrap_aligned_alloc(size_t alignment, size_t size);
 void __wrap_free(void *block);
 
 void *__wrap_malloc(size_t size) { return fails() ? NULL : counted(__real_malloc(size)); }
-void *__wrap_calloc(size_t count, size_t size) { return fails() ? NULL : counted(__real_calloc(count, size)); }
+void *__wrap_calloc(size_t count, size_t size) {
+    return fails() ? NULL : counted(__real_calloc(count, size));
+}
 void *__wrap_realloc(void *old, size_t size) {
     if (fails()) return NULL;
     return old ? __real_realloc(old, size) : counted(__real_realloc(NULL, size));
@@ -111,12 +114,14 @@ static void fail_each(const job *j) {
         fails_at = n;
         anb_status status = run(j);
         fails_at = 0;
-        if (atomic_load(&held)) fail_msg("allocation %ld fails: %ld blocks are left behind", n, atomic_load(&held));
+        if (atomic_load(&held))
+            fail_msg("allocation %ld fails: %ld blocks are left behind", n, atomic_load(&held));
         if (atomic_load(&calls) < n) {
             assert_int_equal(status, j->expected);
             break;
         }
-        if (status != ANB_MEMORY && status != j->expected) fail_msg("allocation %ld fails: status %d", n, status);
+        if (status != ANB_MEMORY && status != j->expected)
+            fail_msg("allocation %ld fails: status %d", n, status);
         failures += status == ANB_MEMORY;
     }
     printf("%ld failures were told\n", failures);
@@ -134,7 +139,9 @@ static void test_feed(void **state) {
                              "for k in 1 .. 16 { port out[k]: z0 at n[15 + k] }\n"
                              "for k in 1 .. 15 { S[k]: split(sqrt(2)*z0) on (n[k], n[2*k], n[2*k + 1]) }\n"
                              "sweep at 0 Hz, 500 MHz, 1 GHz, 2 GHz\n",
-                     .threads = 1, .expected = ANB_OK, .format = 1});
+                     .threads = 1,
+                     .expected = ANB_OK,
+                     .format = 1});
 }
 
 static void test_errors(void **state) {
@@ -144,7 +151,8 @@ static void test_errors(void **state) {
                              "a -- inductor(2 nH, qx = 40) -- b\n"
                              "b -- shunt 3 GHz\n"
                              "sweep at 1 GHz\n",
-                     .threads = 1, .expected = ANB_INVALID});
+                     .threads = 1,
+                     .expected = ANB_INVALID});
 }
 
 static void test_threads(void **state) {
@@ -154,7 +162,9 @@ static void test_threads(void **state) {
                              "a -- 3 nH -- m -- 10 pF -- n -- 5 nH -- b -- shunt 1.2 pF\n"
                              "m -- 2 pF -- ground\nn -- shunt 1 uH\n"
                              "sweep 0 Hz .. 1 GHz points 40001\n",
-                     .threads = 2, .version = "2", .expected = ANB_OK});
+                     .threads = 2,
+                     .version = "2",
+                     .expected = ANB_OK});
 }
 
 int main(void) {

@@ -1,4 +1,5 @@
-/* Numbers to text and back. What is compared with std::to_chars by the million stands in tests/bench/number_compare.cpp. */
+/* Numbers to text and back. What is compared with std::to_chars by the million stands in
+ * tests/bench/number_compare.cpp. */
 #include <setjmp.h>
 #include <stdarg.h>
 #include <stddef.h>
@@ -48,10 +49,18 @@ static void test_digits(void **state) {
         double value;
         int digits, shift;
         const char *text;
-    } cases[] = {{2.0 / 3, 3, 0, "0.667"}, {0.5, 1, 0, "0.5"},     {2.5, 1, 0, "2"}, /* halves go to even */
-                 {3.5, 1, 0, "4"},         {0.125, 2, 0, "0.12"},  {0.375, 2, 0, "0.38"},
-                 {999.96, 4, 0, "1000"},   {1e22, 3, 0, "1e+22"},  {5e-324, 3, 0, "4.94e-324"},
-                 {123456789, 17, -6, "123.456789"}, {1e9, 5, -9, "1"}, {-0.04, 1, 0, "-0.04"}};
+    } cases[] = {{2.0 / 3, 3, 0, "0.667"},
+                 {0.5, 1, 0, "0.5"},
+                 {2.5, 1, 0, "2"}, /* halves go to even */
+                 {3.5, 1, 0, "4"},
+                 {0.125, 2, 0, "0.12"},
+                 {0.375, 2, 0, "0.38"},
+                 {999.96, 4, 0, "1000"},
+                 {1e22, 3, 0, "1e+22"},
+                 {5e-324, 3, 0, "4.94e-324"},
+                 {123456789, 17, -6, "123.456789"},
+                 {1e9, 5, -9, "1"},
+                 {-0.04, 1, 0, "-0.04"}};
     (void)state;
     for (size_t i = 0; i < sizeof cases / sizeof *cases; i++) {
         buffer[anb__number_write_digits(cases[i].value, cases[i].digits, cases[i].shift, buffer)] = '\0';
@@ -75,7 +84,8 @@ static void test_shift(void **state) {
 static void reads(const char *text, int shift, double value, size_t length) {
     double got = NAN;
     assert_int_equal(anb__number_read_scaled(text, strlen(text), shift, &got), length);
-    if (length && memcmp(&got, &value, sizeof got)) fail_msg("%s reads as %.17g, not %.17g", text, got, value);
+    if (length && memcmp(&got, &value, sizeof got))
+        fail_msg("%s reads as %.17g, not %.17g", text, got, value);
 }
 
 static void test_read(void **state) {

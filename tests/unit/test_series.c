@@ -19,7 +19,8 @@ static anb__series u(int order, double factor) { return anb__series_power(anb__c
 
 static void test_arithmetic(void **state) {
     (void)state;
-    anb__series one = u(0, 1), x = u(1, 2), sum = anb__series_add(&one, &x), square = anb__series_mul(&sum, &sum), q;
+    anb__series one = u(0, 1), x = u(1, 2), sum = anb__series_add(&one, &x),
+                square = anb__series_mul(&sum, &sum), q;
     assert_term(&square, 0, 1, 0);
     assert_term(&square, 1, 4, 0);
     assert_term(&square, 2, 4, 0);
