@@ -10,7 +10,7 @@
 
 void *anb__room(anb__arena *arena, void *items, uint32_t count, uint32_t *capacity, size_t size) {
     if (count < *capacity) return items;
-    uint32_t larger = *capacity ? 2 * *capacity : 16;
+    uint32_t larger = *capacity ? 2 * *capacity : 4;
     items = anb__arena_grow(arena, items, *capacity * size, larger * size);
     *capacity = larger;
     return items;

@@ -20,6 +20,12 @@
 #define INNER_SHARE 1e-10 /* of growth^2 */
 
 #define ALWAYS_INLINE static inline __attribute__((always_inline))
+/* Before loops whose bounds are known when compiling: all of what they handle is to stand in registers. */
+#if defined(__clang__)
+#define UNROLLED _Pragma("unroll")
+#else
+#define UNROLLED _Pragma("GCC unroll 16")
+#endif
 
 typedef struct run {
     double *slots;
@@ -139,6 +145,7 @@ ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, co
     const reciprocal pivot = invert(get(e->pivot + s.at));
     const anb__vec past = anb__load(e->own_history + s.half);
     anb__vec squares = past;
+    UNROLLED
     for (int k = 0; k < d; k++) {
         column[k] = get(e->column[k] + s.at);
         row[k] = symmetric ? column[k] : get(e->row[k] + s.at);
@@ -149,7 +156,9 @@ ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, co
     }
     add_growth(x, s, keep ? squares : squares * INNER_SHARE, pivot.square);
     int n = 0;
+    UNROLLED
     for (int i = 0; i < d; i++)
+        UNROLLED
         for (int j = 0; j < (symmetric ? i + 1 : d); j++, n++) {
             const cell old = get(e->from[n] + s.at);
             put(e->to[n] + s.at, less(old, factor[i], row[j]));
@@ -159,7 +168,9 @@ ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, co
         }
     if (!keep) return;
     put(e->pivot + s.at, pivot.of);
+    UNROLLED
     for (int k = 0; k < d; k++) put(e->column[k] + s.at, factor[k]);
+    UNROLLED
     for (int k = 0; k < d && !symmetric; k++) put(e->row[k] + s.at, times(row[k], pivot.of));
 }
 
@@ -209,11 +220,13 @@ typedef struct small {
 } small;
 
 ALWAYS_INLINE void factor_small(small *b, const int m, const bool symmetric) {
+    UNROLLED
     for (int k = 0; k < m; k++) {
         reciprocal pivot = invert(b->a[k][k]);
         b->inverse[k] = pivot.of;
         cell row[ANB__FIXED];
         anb__vec squares = b->history[k];
+        UNROLLED
         for (int i = k + 1; i < m; i++) {
             row[i] = symmetric ? b->a[i][k] : b->a[k][i];
             const anb__vec below = square_of(b->a[i][k]), beside = symmetric ? below : square_of(row[i]);
@@ -224,16 +237,21 @@ ALWAYS_INLINE void factor_small(small *b, const int m, const bool symmetric) {
             if (!symmetric) b->a[k][i] = times(row[i], pivot.of);
         }
         b->growth = plus_growth(b->growth, squares, pivot.square);
+        UNROLLED
         for (int i = k + 1; i < m; i++)
+            UNROLLED
             for (int j = k + 1; j < (symmetric ? i + 1 : m); j++) b->a[i][j] = less(b->a[i][j], b->a[i][k], row[j]);
     }
 }
 
 /* Takahashi's recurrence; the inverse multiplied by `scale`. */
 ALWAYS_INLINE void invert_small(small *b, cell scale, const int m, const bool symmetric) {
+    UNROLLED
     for (int i = m - 1; i >= 0; i--) {
+        UNROLLED
         for (int j = i + 1; j < m; j++) {
             cell across = zero(), down = zero();
+            UNROLLED
             for (int k = i + 1; k < m; k++) {
                 cell u = symmetric ? b->a[k][i] : b->a[i][k];
                 across = less(across, u, b->z[k][j]);
@@ -243,6 +261,7 @@ ALWAYS_INLINE void invert_small(small *b, cell scale, const int m, const bool sy
             b->z[j][i] = symmetric ? across : down;
         }
         cell sum = times(b->inverse[i], scale);
+        UNROLLED
         for (int k = i + 1; k < m; k++) sum = less(sum, symmetric ? b->a[k][i] : b->a[i][k], b->z[k][i]);
         b->z[i][i] = sum;
     }
@@ -259,8 +278,10 @@ typedef struct places {
 
 ALWAYS_INLINE void load_small(const run *x, const places *p, step s, small *b, const int m, const bool symmetric) {
     int n = 0;
+    UNROLLED
     for (int c = 0; c < m; c++) {
         b->history[c] = anb__load(p->history[c] + s.half);
+        UNROLLED
         for (int r = c; r < m; r++, n++) {
             b->a[r][c] = get(p->lower[n] + s.at);
             if (!symmetric && r > c) b->a[c][r] = get(p->upper[n] + s.at);
@@ -272,7 +293,9 @@ ALWAYS_INLINE void load_small(const run *x, const places *p, step s, small *b, c
 ALWAYS_INLINE void store_small(const places *p, size_t at, const small *b, const int m, const bool symmetric,
                                const bool is_result) {
     int n = 0;
+    UNROLLED
     for (int c = 0; c < m; c++)
+        UNROLLED
         for (int r = c; r < m; r++, n++) {
             cell value = b->z[r][c];
             if (is_result && r == c) value = (cell){value.re - p->offset[c].re, value.im - p->offset[c].im};

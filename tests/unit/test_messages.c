@@ -597,7 +597,7 @@ static void overrides_are_checked(void **state) {
 
 /* ---- files ------------------------------------------------------------------------------- */
 
-static char folder[] = "/tmp/anabranch-test-XXXXXX";
+static char folder[] = "anabranch-test-XXXXXX"; /* below the working directory */
 
 static void write_file(const char *name, const char *text) {
     char path[200];
