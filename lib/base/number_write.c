@@ -32,15 +32,16 @@ static decimal shortest(uint64_t fraction, unsigned biased) {
     uint64_t v = round_to_odd(g, (4 * c) << h);
     uint64_t upper = round_to_odd(g, (4 * c + 2) << h) - !even;
     uint64_t s = v / 4;
-    if (s >= 10) {
-        uint64_t tens = s / 10;
-        bool below = lower <= 40 * tens, above = 40 * tens + 40 <= upper;
-        if (below != above) return (decimal){tens + above, k + 1};
-    }
+    /* one digit less if exactly one of the two neighbours with a zero at the end is inside; chosen without a
+     * branch, which nothing could predict */
+    uint64_t tens = s / 10;
+    bool tens_below = lower <= 40 * tens, tens_above = 40 * tens + 40 <= upper;
     bool below = lower <= 4 * s, above = 4 * s + 4 <= upper;
-    if (below != above) return (decimal){s + above, k};
     uint64_t middle = 4 * s + 2;
-    return (decimal){s + (v > middle || (v == middle && s & 1)), k};
+    bool nearest = v > middle || (v == middle && (s & 1));
+    uint64_t full = s + (below != above ? above : nearest), less = tens + tens_above;
+    bool is_less = s >= 10 && tens_below != tens_above;
+    return (decimal){is_less ? less : full, k + is_less};
 }
 
 /* ---- digits ------------------------------------------------------------------------------- */

@@ -157,15 +157,17 @@ ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, co
     add_growth(x, s, keep ? squares : squares * INNER_SHARE, pivot.square);
     int n = 0;
     UNROLLED
-    for (int i = 0; i < d; i++)
+    for (int i = 0; i < d; i++) {
+        const int end = symmetric ? i + 1 : d;
         UNROLLED
-        for (int j = 0; j < (symmetric ? i + 1 : d); j++, n++) {
+        for (int j = 0; j < end; j++, n++) {
             const cell old = get(e->from[n] + s.at);
             put(e->to[n] + s.at, less(old, factor[i], row[j]));
             if (i != j) continue;
             const anb__vec own = plus_square(anb__load(e->history[i] + s.half), old);
             anb__store(e->history[i] + s.half, handed_on(own, past, below[i], beside[i], pivot.square));
         }
+    }
     if (!keep) return;
     put(e->pivot + s.at, pivot.of);
     UNROLLED
@@ -238,9 +240,11 @@ ALWAYS_INLINE void factor_small(small *b, const int m, const bool symmetric) {
         }
         b->growth = plus_growth(b->growth, squares, pivot.square);
         UNROLLED
-        for (int i = k + 1; i < m; i++)
+        for (int i = k + 1; i < m; i++) {
+            const int end = symmetric ? i + 1 : m;
             UNROLLED
-            for (int j = k + 1; j < (symmetric ? i + 1 : m); j++) b->a[i][j] = less(b->a[i][j], b->a[i][k], row[j]);
+            for (int j = k + 1; j < end; j++) b->a[i][j] = less(b->a[i][j], b->a[i][k], row[j]);
+        }
     }
 }
 
