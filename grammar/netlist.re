@@ -3,7 +3,8 @@
 
 anb__token anb__lex(const char *text, uint32_t length, uint32_t at, bool comments) {
     typedef unsigned char YYCTYPE;
-    const YYCTYPE *start = (const YYCTYPE *)text, *YYCURSOR = start + at, *YYLIMIT = start + length, *YYMARKER;
+    const YYCTYPE *start = (const YYCTYPE *)text, *YYLIMIT = start + length;
+    const YYCTYPE *YYCURSOR = start + at, *YYMARKER;
     anb__token token = {ANB__TOKEN_END, length, length, 0};
     for (;;) {
         token.start = (uint32_t)(YYCURSOR - start);
@@ -14,7 +15,8 @@ anb__token anb__lex(const char *text, uint32_t length, uint32_t at, bool comment
 
         digit   = [0-9];
         letter  = [A-Za-z_];
-        sign    = "\u00b5" | "\u03bc" | "\u03a9" | "\u2126" | "\u00b0"; /* micro, ohm (two code points each), degree */
+        /* micro and ohm, two code points each, and the degree */
+        sign    = "\u00b5" | "\u03bc" | "\u03a9" | "\u2126" | "\u00b0";
         word    = (letter | sign) (letter | digit | sign)* | "%";
         number  = (digit+ ("." digit+)? | "." digit+) ([eE] [-+]? digit+)?;
         string  = "\"" ([^"\\\n\x00] | "\\" ["\\])* "\"";

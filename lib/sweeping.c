@@ -172,8 +172,7 @@ static anb_status complain_failure(const sweeping *s) {
     return complain(s, s->network.parts[o->failed_part].span, "no-value", text, NULL);
 }
 
-/* ---- running
- * ------------------------------------------------------------------------------------------------ */
+/* ---- running ---------------------------------------------------------------------------------- */
 
 static size_t elements_of(const sweeping *s) {
     size_t ports = s->network.port_count;
@@ -216,8 +215,7 @@ static anb_status compute_into(anb__bench *bench, const anb__block *block, anb_d
     return anb__compute_points(bench, block->hz, block->count, data->s);
 }
 
-/* ---- into one block of data
- * -------------------------------------------------------------------------------------- */
+/* ---- into one block of data ------------------------------------------------------------------- */
 
 typedef struct collecting {
     sweeping base;
@@ -263,8 +261,7 @@ anb_status anb_sweep(anb_context *context, const anb_netlist *netlist, const anb
     return status;
 }
 
-/* ---- in blocks to a consumer
- * ---------------------------------------------------------------------------------------- */
+/* ---- in blocks to a consumer ------------------------------------------------------------------ */
 
 typedef struct handing {
     sweeping base;
@@ -307,8 +304,7 @@ anb_status anb_sweep_blocks(anb_context *context, const anb_netlist *netlist,
     return status;
 }
 
-/* ---- for the curious
- * ---------------------------------------------------------------------------------------------------- */
+/* ---- for the curious -------------------------------------------------------------------------- */
 
 anb_status anb_sweep_statistics(anb_context *context, const anb_netlist *netlist,
                                 const anb_sweep_options *options, anb_statistics *out) {
@@ -336,9 +332,7 @@ anb_status anb_sweep_statistics(anb_context *context, const anb_netlist *netlist
     return status;
 }
 
-/* ---- as text
- * ----------------------------------------------------------------------------------------------------------------
- */
+/* ---- as text ---------------------------------------------------------------------------------- */
 
 typedef struct writing {
     sweeping base;
@@ -430,9 +424,7 @@ static anb_status write_end(writing *w, bool complete) {
     return status;
 }
 
-/* ---- references
- * ---------------------------------------------------------------------------------------------------------------
- */
+/* ---- references ------------------------------------------------------------------------------- */
 
 /* The references to write at: those asked for, else the ports' own, of complex ones the real part. The
  * network is then computed at them, which is what renormalising its S-parameters gives. */

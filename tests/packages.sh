@@ -6,7 +6,8 @@
 
 packages_build="gcc libc6-dev make cmake re2c scdoc libsuitesparse-dev"
 packages_test="ninja-build g++ clang clang-tidy libclang-rt-14-dev llvm cppcheck shellcheck valgrind
-    pkg-config mandoc binutils libcmocka-dev liblapacke-dev libopenblas-dev python3 python3-numpy python3-mpmath"
+    pkg-config mandoc binutils libcmocka-dev liblapacke-dev libopenblas-dev
+    python3 python3-numpy python3-mpmath"
 
 # Those of the given packages that are not installed, one to a line.
 packages_missing() {

@@ -95,7 +95,7 @@ phase_sanitizers() {
 phase_threads() {
     local runner command="$place/threads/anabranch" netlist
     runner="setarch $(uname -m) -R"
-    build threads gcc -DCMAKE_BUILD_TYPE=RelWithDebInfo -DANB_SANITIZE=thread || return
+    build threads gcc -DCMAKE_BUILD_TYPE=RelWithDebInfo -DANB_SANITIZE=thread -- threaded || return
     tests threads threads -L '^threads$'
     check threads-cli $runner env ANABRANCH="$command" python3 tests/cli/run.py thread
     for netlist in netlists/*.anab; do
@@ -127,14 +127,15 @@ fuzz_target() {
 }
 
 phase_fuzz() {
-    local targets=() target seconds name log
+    local targets=() target all=${ANB_FUZZ_SECONDS:-60} seconds name log
     build fuzz clang -DCMAKE_BUILD_TYPE=RelWithDebInfo -DANB_FUZZ=ON -DANB_SANITIZE=address,undefined \
-        || return
+        -- fuzzers || return
     for target in "$place"/fuzz/tests/fuzz_*; do
         [ -x "$target" ] && [ -f "$target" ] && targets+=("$target")
     done
     check "fuzz-targets" test "${#targets[@]}" -gt 0 || return
-    seconds=$((${ANB_FUZZ_SECONDS:-60} * cores / ${#targets[@]}))
+    seconds=$((all * cores / ${#targets[@]}))
+    [ "$seconds" -le "$all" ] || seconds=$all
     export -f fuzz_target
     export place
     printf '%s\0' "${targets[@]}" | xargs -0 -P "$cores" -I '{}' bash -c '

@@ -305,8 +305,7 @@ static anb__tree *if_else(anb__parser *p, uint32_t start) {
     return anb__end_tree(p, tree);
 }
 
-/* ---- sweeps and what is asked of the result
- * ---------------------------------------------------------------- */
+/* ---- sweeps and what is asked of the result --------------------------------------------------- */
 
 static anb__tree *sweep_at(anb__parser *p) {
     anb__tree *tree = anb__new_tree(p, ANB__TREE_SWEEP_AT, p->now.start);
@@ -388,8 +387,7 @@ static anb__tree *drive(anb__parser *p, uint32_t start) {
     return anb__end_tree(p, tree);
 }
 
-/* ---- by the first word
- * ------------------------------------------------------------------------------------- */
+/* ---- by the first word ------------------------------------------------------------------------ */
 
 static anb__tree *quoted(anb__parser *p, anb__tree_kind kind, uint32_t start, const char *what) {
     anb__tree *tree = anb__new_tree(p, kind, start);
@@ -429,8 +427,7 @@ static anb__tree *any_statement(anb__parser *p) {
     return is_own_kind(p) ? own_kind(p, start) : path_or_place(p, start);
 }
 
-/* ---- recovery
- * -------------------------------------------------------------------------------------------------- */
+/* ---- recovery --------------------------------------------------------------------------------- */
 
 static bool at_end(const anb__parser *p) {
     return p->now.kind == ANB__TOKEN_LINE || p->now.kind == ANB__TOKEN_SEMICOLON ||

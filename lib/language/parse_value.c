@@ -251,8 +251,7 @@ anb__tree *anb__parse_range(anb__parser *p) {
     return binary(p, low, ANB__TREE_RANGE, anb__parse_at_value);
 }
 
-/* ---- conditions
- * -------------------------------------------------------------------------------------------- */
+/* ---- conditions ------------------------------------------------------------------------------- */
 
 static bool is_condition(const anb__tree *tree) {
     return (tree->kind >= ANB__TREE_LESS && tree->kind <= ANB__TREE_NOT) ||

@@ -213,23 +213,25 @@ static void series_branch(const anb__branch_value *value, const frequencies *f, 
 
 /* ---- entries ------------------------------------------------------------------------------ */
 
-static void set_base(const anb__base_terms *t, const frequencies *f, uint32_t groups, double *to) {
-    for (size_t lane = 0; lane < (size_t)groups * ANB__LANES; lane += ANB__WIDTH) {
-        anb__vec omega = anb__load(f->omega + lane), inverse = anb__load(f->inverse + lane);
-        anb__vec re = anb__fnma(omega, anb__all(t->b.im), anb__all(t->a.re));
-        anb__vec im = anb__fma(omega, anb__all(t->b.re), anb__all(t->a.im));
-        double *here = to + lane / ANB__LANES * ANB__GROUP + lane % ANB__LANES;
-        anb__store(here, anb__fma(inverse, anb__all(t->c.im), re));
-        anb__store(here + ANB__LANES, anb__fnma(inverse, anb__all(t->c.re), im));
+/* An entry at one vector of points: its base terms and its shares of the values, summed in registers. */
+static inline void set_entry(const anb__assembly *a, uint32_t e, const frequencies *f, const double *values,
+                             uint32_t groups, size_t lane, double *to) {
+    const anb__base_terms *t = &a->base[e];
+    size_t at = lane / ANB__LANES * ANB__GROUP + lane % ANB__LANES;
+    anb__vec omega = anb__load(f->omega + lane), inverse = anb__load(f->inverse + lane);
+    anb__vec re = anb__fnma(omega, anb__all(t->b.im), anb__all(t->a.re));
+    anb__vec im = anb__fma(omega, anb__all(t->b.re), anb__all(t->a.im));
+    re = anb__fma(inverse, anb__all(t->c.im), re);
+    im = anb__fnma(inverse, anb__all(t->c.re), im);
+    for (uint32_t i = a->first_share[e]; i < a->first_share[e + 1]; i++) {
+        const anb__share *share = &a->shares[i];
+        const double *from = values + (size_t)share->value * groups * ANB__GROUP + at;
+        anb__vec factor = anb__all(share->factor);
+        im = anb__fma(factor, anb__load(from + ANB__LANES), im);
+        if (!share->imaginary) re = anb__fma(factor, anb__load(from), re);
     }
-}
-
-static inline void add_share(const anb__share *share, const double *values, uint32_t groups, double *to) {
-    const double *from = values + (size_t)share->value * groups * ANB__GROUP;
-    anb__vec factor = anb__all(share->factor);
-    for (uint32_t g = 0; g < groups; g++, from += ANB__GROUP, to += ANB__GROUP)
-        for (int v = share->imaginary ? ANB__LANES : 0; v < ANB__GROUP; v += ANB__WIDTH)
-            anb__store(to + v, anb__fma(factor, anb__load(from + v), anb__load(to + v)));
+    anb__store(to + at, re);
+    anb__store(to + at + ANB__LANES, im);
 }
 
 static void prepare(const double *hz, uint32_t groups, double *scratch, frequencies *f) {
@@ -264,8 +266,7 @@ void ANB__KERNEL(fill)(const anb__assembly *a, const uint32_t *slot_of, const do
     evaluate_generics(a, hz, groups, values);
     for (uint32_t e = 0; e < a->entry_count; e++) {
         double *to = slots + (size_t)slot_of[e] * groups * ANB__GROUP;
-        set_base(&a->base[e], &f, groups, to);
-        for (uint32_t i = a->first_share[e]; i < a->first_share[e + 1]; i++)
-            add_share(&a->shares[i], values, groups, to);
+        for (size_t lane = 0; lane < (size_t)groups * ANB__LANES; lane += ANB__WIDTH)
+            set_entry(a, e, &f, values, groups, lane, to);
     }
 }

@@ -1,18 +1,17 @@
 /* The plan's operations, all lanes of a block at each. Included by kernels_plain.c, kernels_avx2.c and
  * kernels_avx512.c, each compiled for its instruction set.
  *
- * The guard is a running estimate of the rounding errors. A diagonal element D carries in its *history* the sum of
- *     |D|^2 as it was before each of its updates, and |l|^4 times the history of the pivot that updates it,
- * about the square of its absolute error in units of the last place: it grows where little is left of
- * large numbers, and an error is handed on with the square of the multiplier l, so that losses one after another
- * multiply. Offdiagonal elements need no look: their updates are geometric means of the diagonal ones'. At
- * each pivot
- *     growth^2 = (history of D + sum of |a|^2 over its column) / |D|^2,
- * and the lane's measure is the sum of growth^4 over all pivots: it is led by the largest, and it keeps
- * what is not a number, as a maximum would not. A pivot that only hands on its error, and has no part in the
- * inverse that is wanted, counts a small share of it (INNER_SHARE): what its loss does to the result stands in the
- * histories of its neighbours, and is little in a chain of resonators that a port damps further on. The share is there for
- * losses so large that they are no longer handed on in proportion.
+ * The guard is a running estimate of the rounding errors. A diagonal element D carries in its *history* the
+ * sum of |D|^2 as it was before each of its updates, and |l|^4 times the history of the pivot that updates
+ * it, about the square of its absolute error in units of the last place: it grows where little is left of
+ * large numbers, and an error is handed on with the square of the multiplier l, so that losses one after
+ * another multiply. Offdiagonal elements need no look: their updates are geometric means of the diagonal
+ * ones'. At each pivot growth^2 = (history of D + sum of |a|^2 over its column) / |D|^2, and the lane's
+ * measure is the sum of growth^4 over all pivots: it is led by the largest, and it keeps what is not a
+ * number, as a maximum would not. A pivot that only hands on its error, and has no part in the inverse that
+ * is wanted, counts a small share of it (INNER_SHARE): what its loss does to the result stands in the
+ * histories of its neighbours, and is little in a chain of resonators that a port damps further on. The share
+ * is there for losses so large that they are no longer handed on in proportion.
  */
 #include "base/lanes.h"
 #include "solve/plan_code.h"
@@ -20,12 +19,6 @@
 #define INNER_SHARE 1e-10 /* of growth^2 */
 
 #define ALWAYS_INLINE static inline __attribute__((always_inline))
-/* Before loops whose bounds are known when compiling: all of what they handle is to stand in registers. */
-#if defined(__clang__)
-#define UNROLLED _Pragma("unroll")
-#else
-#define UNROLLED _Pragma("GCC unroll 16")
-#endif
 
 typedef struct run {
     double *slots;
@@ -106,15 +99,18 @@ ALWAYS_INLINE void add_growth(const run *x, step s, anb__vec squares, anb__vec i
     anb__store(x->growth + s.half, plus_growth(anb__load(x->growth + s.half), squares, inverse_square));
 }
 /* A pivot's history as one of its neighbours gets it; |l|^2 is |column| |row| / |pivot|^2. */
-ALWAYS_INLINE anb__vec handed_on(anb__vec past, anb__vec history, anb__vec column, anb__vec row, anb__vec inverse_square) {
+ALWAYS_INLINE anb__vec handed_on(anb__vec past, anb__vec history, anb__vec column, anb__vec row,
+                                 anb__vec inverse_square) {
     return anb__fma((column * inverse_square) * (row * inverse_square), history, past);
 }
 
-/* ---- one unknown ---------------------------------------------------------------------------------------- */
+/* ---- one unknown ----------------------------------------------------------------------------------------
+ */
 
-/* ELIMINATE: neighbours d; keep; pivot's slot, its history; the slots of column [d] (and of row [d] where not symmetric);
- * the histories of the neighbours [d]; then (from, to) of each element that is updated, row by row: the lower triangle
- * where symmetric, else d x d. If `keep`, L replaces the column, U the row and 1/D the pivot. */
+/* ELIMINATE: neighbours d; keep; pivot's slot, its history; the slots of column [d] (and of row [d] where not
+ * symmetric); the histories of the neighbours [d]; then (from, to) of each element that is updated, row by
+ * row: the lower triangle where symmetric, else d x d. If `keep`, L replaces the column, U the row and 1/D
+ * the pivot. */
 
 enum { MOST_UPDATES = ANB__FIXED * ANB__FIXED };
 
@@ -138,14 +134,13 @@ ALWAYS_INLINE const uint32_t *read_elimination(const run *x, const uint32_t *op,
     return op;
 }
 
-ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, const int d, const bool symmetric,
-                                  const bool keep) {
+ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, const int d,
+                                  const bool symmetric, const bool keep) {
     cell column[ANB__FIXED], row[ANB__FIXED], factor[ANB__FIXED];
     anb__vec below[ANB__FIXED], beside[ANB__FIXED]; /* squares */
     const reciprocal pivot = invert(get(e->pivot + s.at));
     const anb__vec past = anb__load(e->own_history + s.half);
     anb__vec squares = past;
-    UNROLLED
     for (int k = 0; k < d; k++) {
         column[k] = get(e->column[k] + s.at);
         row[k] = symmetric ? column[k] : get(e->row[k] + s.at);
@@ -156,27 +151,22 @@ ALWAYS_INLINE void eliminate_step(const run *x, const elimination *e, step s, co
     }
     add_growth(x, s, keep ? squares : squares * INNER_SHARE, pivot.square);
     int n = 0;
-    UNROLLED
-    for (int i = 0; i < d; i++) {
-        const int end = symmetric ? i + 1 : d;
-        UNROLLED
-        for (int j = 0; j < end; j++, n++) {
+    for (int i = 0; i < d; i++)
+        for (int j = 0; j < (symmetric ? i + 1 : d); j++, n++) {
             const cell old = get(e->from[n] + s.at);
             put(e->to[n] + s.at, less(old, factor[i], row[j]));
             if (i != j) continue;
             const anb__vec own = plus_square(anb__load(e->history[i] + s.half), old);
             anb__store(e->history[i] + s.half, handed_on(own, past, below[i], beside[i], pivot.square));
         }
-    }
     if (!keep) return;
     put(e->pivot + s.at, pivot.of);
-    UNROLLED
     for (int k = 0; k < d; k++) put(e->column[k] + s.at, factor[k]);
-    UNROLLED
     for (int k = 0; k < d && !symmetric; k++) put(e->row[k] + s.at, times(row[k], pivot.of));
 }
 
-ALWAYS_INLINE const uint32_t *eliminate_by(const run *x, const uint32_t *op, const int d, const bool symmetric) {
+ALWAYS_INLINE const uint32_t *eliminate_by(const run *x, const uint32_t *op, const int d,
+                                           const bool symmetric) {
     elimination e;
     const bool keep = *op++;
     op = read_elimination(x, op, d, symmetric, &e);
@@ -192,27 +182,39 @@ static const uint32_t *eliminate(const run *x, const uint32_t *op) {
     const uint32_t d = *op++;
     if (x->symmetric) {
         switch (d) {
-            case 0: return eliminate_by(x, op, 0, true);
-            case 1: return eliminate_by(x, op, 1, true);
-            case 2: return eliminate_by(x, op, 2, true);
-            case 3: return eliminate_by(x, op, 3, true);
-            default: return eliminate_by(x, op, 4, true);
+        case 0:
+            return eliminate_by(x, op, 0, true);
+        case 1:
+            return eliminate_by(x, op, 1, true);
+        case 2:
+            return eliminate_by(x, op, 2, true);
+        case 3:
+            return eliminate_by(x, op, 3, true);
+        default:
+            return eliminate_by(x, op, 4, true);
         }
     }
     switch (d) {
-        case 0: return eliminate_by(x, op, 0, false);
-        case 1: return eliminate_by(x, op, 1, false);
-        case 2: return eliminate_by(x, op, 2, false);
-        case 3: return eliminate_by(x, op, 3, false);
-        default: return eliminate_by(x, op, 4, false);
+    case 0:
+        return eliminate_by(x, op, 0, false);
+    case 1:
+        return eliminate_by(x, op, 1, false);
+    case 2:
+        return eliminate_by(x, op, 2, false);
+    case 3:
+        return eliminate_by(x, op, 3, false);
+    default:
+        return eliminate_by(x, op, 4, false);
     }
 }
 
-/* ---- a small block --------------------------------------------------------------------------------------- */
+/* ---- a small block ---------------------------------------------------------------------------------------
+ */
 
-/* INVERT: size m; whether the inverse goes into the result only (else into the slots only); the number of a constant; first
- * slot of the packed lower triangle, and of the upper one; histories [m]; the elements of the result, in the order of
- * the slots (lower, then upper where not symmetric); constants [m] to be taken from the diagonal. */
+/* INVERT: size m; whether the inverse goes into the result only (else into the slots only); the number of a
+ * constant; first slot of the packed lower triangle, and of the upper one; histories [m]; the elements of the
+ * result, in the order of the slots (lower, then upper where not symmetric); constants [m] to be taken from
+ * the diagonal. */
 
 typedef struct small {
     cell a[ANB__FIXED][ANB__FIXED]; /* the matrix, then L and U below and above the diagonal */
@@ -222,13 +224,11 @@ typedef struct small {
 } small;
 
 ALWAYS_INLINE void factor_small(small *b, const int m, const bool symmetric) {
-    UNROLLED
     for (int k = 0; k < m; k++) {
         reciprocal pivot = invert(b->a[k][k]);
         b->inverse[k] = pivot.of;
         cell row[ANB__FIXED];
         anb__vec squares = b->history[k];
-        UNROLLED
         for (int i = k + 1; i < m; i++) {
             row[i] = symmetric ? b->a[i][k] : b->a[k][i];
             const anb__vec below = square_of(b->a[i][k]), beside = symmetric ? below : square_of(row[i]);
@@ -239,23 +239,17 @@ ALWAYS_INLINE void factor_small(small *b, const int m, const bool symmetric) {
             if (!symmetric) b->a[k][i] = times(row[i], pivot.of);
         }
         b->growth = plus_growth(b->growth, squares, pivot.square);
-        UNROLLED
-        for (int i = k + 1; i < m; i++) {
-            const int end = symmetric ? i + 1 : m;
-            UNROLLED
-            for (int j = k + 1; j < end; j++) b->a[i][j] = less(b->a[i][j], b->a[i][k], row[j]);
-        }
+        for (int i = k + 1; i < m; i++)
+            for (int j = k + 1; j < (symmetric ? i + 1 : m); j++)
+                b->a[i][j] = less(b->a[i][j], b->a[i][k], row[j]);
     }
 }
 
 /* Takahashi's recurrence; the inverse multiplied by `scale`. */
 ALWAYS_INLINE void invert_small(small *b, cell scale, const int m, const bool symmetric) {
-    UNROLLED
     for (int i = m - 1; i >= 0; i--) {
-        UNROLLED
         for (int j = i + 1; j < m; j++) {
             cell across = zero(), down = zero();
-            UNROLLED
             for (int k = i + 1; k < m; k++) {
                 cell u = symmetric ? b->a[k][i] : b->a[i][k];
                 across = less(across, u, b->z[k][j]);
@@ -265,7 +259,6 @@ ALWAYS_INLINE void invert_small(small *b, cell scale, const int m, const bool sy
             b->z[j][i] = symmetric ? across : down;
         }
         cell sum = times(b->inverse[i], scale);
-        UNROLLED
         for (int k = i + 1; k < m; k++) sum = less(sum, symmetric ? b->a[k][i] : b->a[i][k], b->z[k][i]);
         b->z[i][i] = sum;
     }
@@ -276,16 +269,15 @@ typedef struct places {
     double *lower[MOST_UPDATES], *upper[MOST_UPDATES];
     double *history[ANB__FIXED];
     double *to_lower[MOST_UPDATES], *to_upper[MOST_UPDATES]; /* the results' */
-    size_t to_step; /* from a group's result to the next one's */
+    size_t to_step;                                          /* from a group's result to the next one's */
     cell scale, offset[ANB__FIXED];
 } places;
 
-ALWAYS_INLINE void load_small(const run *x, const places *p, step s, small *b, const int m, const bool symmetric) {
+ALWAYS_INLINE void load_small(const run *x, const places *p, step s, small *b, const int m,
+                              const bool symmetric) {
     int n = 0;
-    UNROLLED
     for (int c = 0; c < m; c++) {
         b->history[c] = anb__load(p->history[c] + s.half);
-        UNROLLED
         for (int r = c; r < m; r++, n++) {
             b->a[r][c] = get(p->lower[n] + s.at);
             if (!symmetric && r > c) b->a[c][r] = get(p->upper[n] + s.at);
@@ -297,9 +289,7 @@ ALWAYS_INLINE void load_small(const run *x, const places *p, step s, small *b, c
 ALWAYS_INLINE void store_small(const places *p, size_t at, const small *b, const int m, const bool symmetric,
                                const bool is_result) {
     int n = 0;
-    UNROLLED
     for (int c = 0; c < m; c++)
-        UNROLLED
         for (int r = c; r < m; r++, n++) {
             cell value = b->z[r][c];
             if (is_result && r == c) value = (cell){value.re - p->offset[c].re, value.im - p->offset[c].im};
@@ -342,7 +332,8 @@ ALWAYS_INLINE const uint32_t *read_places(const run *x, const uint32_t *op, plac
     return op;
 }
 
-ALWAYS_INLINE const uint32_t *invert_block_by(const run *x, const uint32_t *op, const int m, const bool symmetric) {
+ALWAYS_INLINE const uint32_t *invert_block_by(const run *x, const uint32_t *op, const int m,
+                                              const bool symmetric) {
     places p;
     const bool is_result = *op++;
     op = read_places(x, op, &p, m, symmetric, is_result);
@@ -358,29 +349,38 @@ static const uint32_t *invert_block(const run *x, const uint32_t *op) {
     const uint32_t m = *op++;
     if (x->symmetric) {
         switch (m) {
-            case 1: return invert_block_by(x, op, 1, true);
-            case 2: return invert_block_by(x, op, 2, true);
-            case 3: return invert_block_by(x, op, 3, true);
-            default: return invert_block_by(x, op, 4, true);
+        case 1:
+            return invert_block_by(x, op, 1, true);
+        case 2:
+            return invert_block_by(x, op, 2, true);
+        case 3:
+            return invert_block_by(x, op, 3, true);
+        default:
+            return invert_block_by(x, op, 4, true);
         }
     }
     switch (m) {
-        case 1: return invert_block_by(x, op, 1, false);
-        case 2: return invert_block_by(x, op, 2, false);
-        case 3: return invert_block_by(x, op, 3, false);
-        default: return invert_block_by(x, op, 4, false);
+    case 1:
+        return invert_block_by(x, op, 1, false);
+    case 2:
+        return invert_block_by(x, op, 2, false);
+    case 3:
+        return invert_block_by(x, op, 3, false);
+    default:
+        return invert_block_by(x, op, 4, false);
     }
 }
 
-/* ---- rows of the inverse -------------------------------------------------------------------------------------- */
+/* ---- rows of the inverse ---------------------------------------------------------------------- */
 
-/* INVERSE: neighbours d; how many targets in slots, how many in the result; the factors' slots [d]; for each target its slot
- * or element, then the slots of its sources [d]; the slot of 1/D or NOWHERE; if it is somewhere: the number of a constant
- * for it, the slot of the diagonal element or NOWHERE, its element of the result or NOWHERE and the constant to be
- * taken from it, its sources [d]. */
+/* INVERSE: neighbours d; how many targets in slots, how many in the result; the factors' slots [d]; for each
+ * target its slot or element, then the slots of its sources [d]; the slot of 1/D or NOWHERE; if it is
+ * somewhere: the number of a constant for it, the slot of the diagonal element or NOWHERE, its element of the
+ * result or NOWHERE and the constant to be taken from it, its sources [d]. */
 
 /* - sum of factors times sources */
-ALWAYS_INLINE cell sum_of(const run *x, cell sum, const cell *factor, const uint32_t *sources, size_t at, const int d) {
+ALWAYS_INLINE cell sum_of(const run *x, cell sum, const cell *factor, const uint32_t *sources, size_t at,
+                          const int d) {
     for (int k = 0; k < d; k++) sum = less(sum, factor[k], get(slot(x, sources[k]) + at));
     return sum;
 }
@@ -416,18 +416,31 @@ static const uint32_t *end_of_inverse(const uint32_t *op, uint32_t d) {
 static const uint32_t *inverse_row(const run *x, const uint32_t *op) {
     const uint32_t d = *op++, steps = x->groups * ANB__VECTORS;
     for (uint32_t k = 0; k < steps; k++) switch (d) {
-            case 0: inverse_step(x, op, k, 0); break;
-            case 1: inverse_step(x, op, k, 1); break;
-            case 2: inverse_step(x, op, k, 2); break;
-            case 3: inverse_step(x, op, k, 3); break;
-            case 4: inverse_step(x, op, k, 4); break;
-            default: inverse_step_long(x, op, k, d);
+        case 0:
+            inverse_step(x, op, k, 0);
+            break;
+        case 1:
+            inverse_step(x, op, k, 1);
+            break;
+        case 2:
+            inverse_step(x, op, k, 2);
+            break;
+        case 3:
+            inverse_step(x, op, k, 3);
+            break;
+        case 4:
+            inverse_step(x, op, k, 4);
+            break;
+        default:
+            inverse_step_long(x, op, k, d);
         }
     return end_of_inverse(op, d);
 }
 
-ALWAYS_INLINE cell long_sum(const run *x, cell sum, const uint32_t *factors, const uint32_t *sources, size_t at, uint32_t d) {
-    for (uint32_t k = 0; k < d; k++) sum = less(sum, get(slot(x, factors[k]) + at), get(slot(x, sources[k]) + at));
+ALWAYS_INLINE cell long_sum(const run *x, cell sum, const uint32_t *factors, const uint32_t *sources,
+                            size_t at, uint32_t d) {
+    for (uint32_t k = 0; k < d; k++)
+        sum = less(sum, get(slot(x, factors[k]) + at), get(slot(x, sources[k]) + at));
     return sum;
 }
 
@@ -449,7 +462,7 @@ static void inverse_step_long(const run *x, const uint32_t *op, uint32_t k, cons
     put(out + (size_t)op[3] * ANB__GROUP, (cell){sum.re - offset.re, sum.im - offset.im});
 }
 
-/* ---- bookkeeping -------------------------------------------------------------------------------------------------- */
+/* ---- bookkeeping ------------------------------------------------------------------------------ */
 
 /* CLEAR: how many runs; (first slot, slots) of each */
 static const uint32_t *clear(const run *x, const uint32_t *op) {
@@ -471,7 +484,8 @@ static const uint32_t *scale(const run *x, const uint32_t *op) {
     return op;
 }
 
-/* COPY: how many; of each the element of the result, the slot, and the constant to be taken from it or NOWHERE */
+/* COPY: how many; of each the element of the result, the slot, and the constant to be taken from it or
+ * NOWHERE */
 static const uint32_t *copy(const run *x, const uint32_t *op) {
     for (uint32_t count = *op++; count; count--, op += 3) {
         const double *from = slot(x, op[1]);
@@ -486,8 +500,8 @@ static const uint32_t *copy(const run *x, const uint32_t *op) {
     return op;
 }
 
-/* COMBINE: how many elements of the result; of each, in their order, a constant for the sum, the one to be taken from it or
- * NOWHERE, how many terms; (slot, whether it counts negative) of each */
+/* COMBINE: how many elements of the result; of each, in their order, a constant for the sum, the one to be
+ * taken from it or NOWHERE, how many terms; (slot, whether it counts negative) of each */
 static cell combination(const run *x, const uint32_t *op, size_t at) {
     cell sum = zero();
     const uint32_t *term = op + 3;
@@ -512,21 +526,31 @@ static const uint32_t *combine(const run *x, const uint32_t *op) {
 
 #include "solve/kernels_dense.h"
 
-/* ---- the whole plan ----------------------------------------------------------------------------------------------------- */
+/* ---- the whole plan --------------------------------------------------------------------------- */
 
 static const uint32_t *one_operation(const run *x, const uint32_t *op) {
     switch ((anb__operation)*op++) {
-        case ANB__OP_CLEAR: return clear(x, op);
-        case ANB__OP_ELIMINATE: return eliminate(x, op);
-        case ANB__OP_PANEL: return panel(x, op);
-        case ANB__OP_INVERT: return invert_block(x, op);
-        case ANB__OP_SWEEP: return sweep(x, op);
-        case ANB__OP_SCALE: return scale(x, op);
-        case ANB__OP_INVERSE: return inverse_row(x, op);
-        case ANB__OP_COPY: return copy(x, op);
-        case ANB__OP_COMBINE: return combine(x, op);
-        case ANB__OP_END:
-        case ANB__OP_COUNT: break;
+    case ANB__OP_CLEAR:
+        return clear(x, op);
+    case ANB__OP_ELIMINATE:
+        return eliminate(x, op);
+    case ANB__OP_PANEL:
+        return panel(x, op);
+    case ANB__OP_INVERT:
+        return invert_block(x, op);
+    case ANB__OP_SWEEP:
+        return sweep(x, op);
+    case ANB__OP_SCALE:
+        return scale(x, op);
+    case ANB__OP_INVERSE:
+        return inverse_row(x, op);
+    case ANB__OP_COPY:
+        return copy(x, op);
+    case ANB__OP_COMBINE:
+        return combine(x, op);
+    case ANB__OP_END:
+    case ANB__OP_COUNT:
+        break;
     }
     return NULL;
 }
@@ -542,9 +566,14 @@ static void set_suspects(const run *x, double limit, uint8_t *suspect) {
     }
 }
 
-void ANB__KERNEL(plan_run)(const anb__plan *plan, double *slots, uint32_t groups, double *out, uint8_t *suspect) {
-    run x = {.slots = slots, .stride = (size_t)groups * ANB__GROUP, .groups = groups, .out = out,
-             .out_stride = (size_t)plan->element_count * ANB__GROUP, .constants = plan->constants,
+void ANB__KERNEL(plan_run)(const anb__plan *plan, double *slots, uint32_t groups, double *out,
+                           uint8_t *suspect) {
+    run x = {.slots = slots,
+             .stride = (size_t)groups * ANB__GROUP,
+             .groups = groups,
+             .out = out,
+             .out_stride = (size_t)plan->element_count * ANB__GROUP,
+             .constants = plan->constants,
              .symmetric = plan->symmetric};
     x.histories = slot(&x, plan->history_slot);
     x.growth = history(&x, ANB__GROWTH_HISTORY);

@@ -1,17 +1,18 @@
 /* Dense parts of the elimination: panels, and the sweep that inverts a large block. Part of solve/kernels.h.
  *
  * Both work group by group and come down to one thing: a packed triangle of targets minus the product
- * of two thin matrices, t(r, j) -= sum over k of l(r, k) u(j, k), computed in tiles that stay in registers. The thin
- * matrices are copied to the scratch slots, [row][k] of one group.
+ * of two thin matrices, t(r, j) -= sum over k of l(r, k) u(j, k), computed in tiles that stay in registers.
+ * The thin matrices are copied to the scratch slots, [row][k] of one group.
  */
 
 enum {
     TILE = ANB__WIDTH == 8 ? 3 : 2, /* the tile's accumulators fit into the registers */
-    STRIP = 24,                     /* columns of targets that are passed over together: their u stays cached */
-    NARROW = 4                      /* columns of a panel that are eliminated one by one */
+    STRIP = 24, /* columns of targets that are passed over together: their u stays cached */
+    NARROW = 4  /* columns of a panel that are eliminated one by one */
 };
 
-/* A trapezoid of targets: the first `solid` columns stand in packed columns; slots of the others are listed. */
+/* A trapezoid of targets: the first `solid` columns stand in packed columns; slots of the others are listed.
+ */
 typedef struct targets {
     uint32_t height, solid;
     uint32_t base;         /* slot of the first packed element */
@@ -42,8 +43,8 @@ ALWAYS_INLINE double *at_history(const bench *b, uint32_t number) { return histo
 
 /* ---- products ------------------------------------------------------------------------------------- */
 
-ALWAYS_INLINE void tile_part(double *const *to, const double *l, const double *u, size_t pitch, uint32_t depth,
-                             const int rows, const int columns) {
+ALWAYS_INLINE void tile_part(double *const *to, const double *l, const double *u, size_t pitch,
+                             uint32_t depth, const int rows, const int columns) {
     cell sum[TILE][TILE];
     for (int i = 0; i < rows; i++)
         for (int j = 0; j < columns; j++) sum[i][j] = get(to[i * columns + j]);
@@ -59,7 +60,8 @@ ALWAYS_INLINE void tile_part(double *const *to, const double *l, const double *u
         for (int j = 0; j < columns; j++) put(to[i * columns + j], sum[i][j]);
 }
 
-ALWAYS_INLINE void tile_by(double *const *to, const thin *p, uint32_t r, uint32_t j, const int rows, const int columns) {
+ALWAYS_INLINE void tile_by(double *const *to, const thin *p, uint32_t r, uint32_t j, const int rows,
+                           const int columns) {
     double *here[TILE * TILE];
     for (int v = 0; v < ANB__LANES; v += ANB__WIDTH) {
         for (int k = 0; k < rows * columns; k++) here[k] = to[k] + v;
@@ -73,9 +75,12 @@ static void tile(const bench *b, const targets *t, const thin *p, uint32_t r, ui
     double *to[TILE * TILE];
     for (uint32_t i = 0; i < rows; i++)
         for (uint32_t c = 0; c < columns; c++) to[i * columns + c] = at_slot(b, target_slot(t, r + i, j + c));
-    if (rows == TILE && columns == TILE) tile_by(to, p, r, j, TILE, TILE);
-    else if (rows == TILE && columns == 1) tile_by(to, p, r, j, TILE, 1);
-    else if (rows == 1 && columns == TILE) tile_by(to, p, r, j, 1, TILE);
+    if (rows == TILE && columns == TILE)
+        tile_by(to, p, r, j, TILE, TILE);
+    else if (rows == TILE && columns == 1)
+        tile_by(to, p, r, j, TILE, 1);
+    else if (rows == 1 && columns == TILE)
+        tile_by(to, p, r, j, 1, TILE);
     else
         for (uint32_t i = 0; i < rows; i++)
             for (uint32_t c = 0; c < columns; c++) tile_by(&to[i * columns + c], p, r + i, j + c, 1, 1);
@@ -93,8 +98,8 @@ static void rectangle(const bench *b, const targets *t, const thin *p, uint32_t 
 }
 
 /* Columns j0 .. j1-1 with their rows from the diagonal (or, `strictly`, from below it) to `height`. */
-static void triangle(const bench *b, const targets *t, const thin *p, uint32_t j0, uint32_t j1, uint32_t height,
-                     bool strictly) {
+static void triangle(const bench *b, const targets *t, const thin *p, uint32_t j0, uint32_t j1,
+                     uint32_t height, bool strictly) {
     for (uint32_t strip = j0; strip < j1; strip += STRIP) {
         uint32_t end = strip + STRIP < j1 ? strip + STRIP : j1;
         for (uint32_t j = strip; j < end; j += TILE) {
@@ -108,7 +113,8 @@ static void triangle(const bench *b, const targets *t, const thin *p, uint32_t j
 }
 
 /* Adds what the diagonal elements j0 .. j1-1 are now to their histories, before they are updated. */
-static void note_diagonals(const bench *b, const targets *t, const uint32_t *histories, uint32_t j0, uint32_t j1) {
+static void note_diagonals(const bench *b, const targets *t, const uint32_t *histories, uint32_t j0,
+                           uint32_t j1) {
     for (uint32_t j = j0; j < j1; j++) {
         double *past = at_history(b, histories[j]);
         const double *here = at_slot(b, target_slot(t, j, j));
@@ -117,12 +123,13 @@ static void note_diagonals(const bench *b, const targets *t, const uint32_t *his
     }
 }
 
-/* ---- panels --------------------------------------------------------------------------------------------- */
+/* ---- panels ---------------------------------------------------------------------------------------------
+ */
 
-/* PANEL: width w, rows d below it, keep; first slots of the packed columns of L and of the packed rows of U; histories
- * [w + d]; the slots of the targets outside, packed columns of the lower triangle of d rows (and, where not symmetric,
- * packed rows of the upper one, whose diagonal is not used). L replaces the columns and 1/D the diagonal; U stays
- * unscaled until, if `keep`, the end. */
+/* PANEL: width w, rows d below it, keep; first slots of the packed columns of L and of the packed rows of U;
+ * histories [w + d]; the slots of the targets outside, packed columns of the lower triangle of d rows (and,
+ * where not symmetric, packed rows of the upper one, whose diagonal is not used). L replaces the columns and
+ * 1/D the diagonal; U stays unscaled until, if `keep`, the end. */
 typedef struct panel_data {
     targets lower, upper;
     const uint32_t *histories;
@@ -158,7 +165,8 @@ static void factor_column(const bench *b, const panel_data *p, uint32_t c, uint3
 }
 
 /* Updates columns j0 .. j1-1 by the columns k0 .. k1-1 of the scratch. */
-static void update_columns(const bench *b, const panel_data *p, uint32_t j0, uint32_t j1, uint32_t k0, uint32_t k1) {
+static void update_columns(const bench *b, const panel_data *p, uint32_t j0, uint32_t j1, uint32_t k0,
+                           uint32_t k1) {
     if (j0 >= j1 || k0 >= k1) return;
     thin down = {p->l + k0 * ANB__GROUP, p->u + k0 * ANB__GROUP, PITCH, k1 - k0};
     note_diagonals(b, &p->lower, p->histories, j0, j1);
@@ -216,13 +224,14 @@ static const uint32_t *panel(const run *x, const uint32_t *op) {
     return op;
 }
 
-/* ---- the sweep --------------------------------------------------------------------------------------------- */
+/* ---- the sweep -------------------------------------------------------------------------------- */
 
-/* SWEEP: as INVERT. Elements go to the result where they have a place there, and to their slots unless all do.
+/* SWEEP: as INVERT. Elements go to the result where they have a place there, and to their slots unless all
+ * do.
  *
- * Sweeping the columns K of A replaces A_KK by -1/A_KK, A_RK by A_RK/A_KK, A_KR by A_KR after division from the left,
- * and A_RR by A_RR - A_RK 1/A_KK A_KR; when all are swept, -1/A stands there. The same for symmetric
- * matrices with one half of it (A. E. Beaton 1964; blocked here). */
+ * Sweeping the columns K of A replaces A_KK by -1/A_KK, A_RK by A_RK/A_KK, A_KR by A_KR after division from
+ * the left, and A_RR by A_RR - A_RK 1/A_KK A_KR; when all are swept, -1/A stands there. The same for
+ * symmetric matrices with one half of it (A. E. Beaton 1964; blocked here). */
 typedef struct sweep_data {
     targets lower, upper;
     const uint32_t *histories;
@@ -297,12 +306,13 @@ static void sweep_pivots(const bench *b, const sweep_data *s, uint32_t k0, uint3
     for (int v = 0; v < ANB__LANES; v += ANB__WIDTH)
         for (uint32_t k = 0; k < k1 - k0; k++) sweep_pivot(b, s, k0, k1, k, v);
     for (uint32_t i = 0; i < k1 - k0; i++)
-        for (uint32_t j = 0; j < k1 - k0; j++) copy_cell(in_thin(s, s->turned, i, j), in_thin(s, s->pivot, j, i));
+        for (uint32_t j = 0; j < k1 - k0; j++)
+            copy_cell(in_thin(s, s->turned, i, j), in_thin(s, s->pivot, j, i));
 }
 
 /* product(r, k) = - sum over i of matrix(r, i) pivot(k, i), for the rows outside k0 .. k1-1 */
-static void divide_rows(const sweep_data *s, double *product, const double *matrix, const double *pivot, uint32_t k0,
-                        uint32_t k1) {
+static void divide_rows(const sweep_data *s, double *product, const double *matrix, const double *pivot,
+                        uint32_t k0, uint32_t k1) {
     thin p = {matrix, pivot, s->pitch, k1 - k0};
     double *to[TILE];
     for (uint32_t r = 0; r < s->lower.height; r++) {
@@ -311,7 +321,8 @@ static void divide_rows(const sweep_data *s, double *product, const double *matr
         for (uint32_t k = 0; k < k1 - k0; k += TILE) {
             uint32_t columns = k1 - k0 - k < TILE ? k1 - k0 - k : TILE;
             for (uint32_t j = 0; j < columns; j++) to[j] = in_thin(s, product, r, k + j);
-            if (columns == TILE) tile_by(to, &p, r, k, 1, TILE);
+            if (columns == TILE)
+                tile_by(to, &p, r, k, 1, TILE);
             else
                 for (uint32_t j = 0; j < columns; j++) tile_by(&to[j], &p, r, k + j, 1, 1);
         }
@@ -337,8 +348,8 @@ static void note_factors(const bench *b, const sweep_data *s, uint32_t k0, uint3
     }
 }
 
-static void update_half(const bench *b, const sweep_data *s, const targets *t, const thin *p, uint32_t k0, uint32_t k1,
-                        bool strictly) {
+static void update_half(const bench *b, const sweep_data *s, const targets *t, const thin *p, uint32_t k0,
+                        uint32_t k1, bool strictly) {
     const uint32_t size = s->lower.height;
     triangle(b, t, p, 0, k0, k0, strictly);
     if (k0 && k1 < size) rectangle(b, t, p, k1, size, 0, k0);
@@ -352,7 +363,8 @@ static void write_columns(const bench *b, const sweep_data *s, uint32_t k0, uint
             if (s->symmetric && inside && k > r) continue;
             copy_cell(at_slot(b, sweep_slot(s, r, k)),
                       inside ? in_thin(s, s->pivot, r - k0, k - k0) : in_thin(s, s->left, r, k - k0));
-            if (!s->symmetric && !inside) copy_cell(at_slot(b, sweep_slot(s, k, r)), in_thin(s, s->right, r, k - k0));
+            if (!s->symmetric && !inside)
+                copy_cell(at_slot(b, sweep_slot(s, k, r)), in_thin(s, s->right, r, k - k0));
         }
     }
 }
@@ -392,7 +404,8 @@ static const uint32_t *sweep(const run *x, const uint32_t *op) {
     const size_t packed = (size_t)size * (size + 1) / 2, thin_size = (size_t)size * depth * ANB__GROUP;
     const size_t pivot_size = (size_t)depth * depth * ANB__GROUP;
     const uint32_t *offsets = elements + (x->symmetric ? 1 : 2) * packed;
-    sweep_data s = {.histories = op + 5, .depth = depth, .pitch = (size_t)depth * ANB__GROUP, .symmetric = x->symmetric};
+    sweep_data s = {
+        .histories = op + 5, .depth = depth, .pitch = (size_t)depth * ANB__GROUP, .symmetric = x->symmetric};
     s.lower = (targets){size, size, op[3], NULL};
     s.upper = (targets){size, size, op[4], NULL};
     s.column = x->scratch;
@@ -406,7 +419,8 @@ static const uint32_t *sweep(const run *x, const uint32_t *op) {
     const cell minus_scale = all(anb__cneg(scale));
     for (uint32_t g = 0; g < x->groups; g++) {
         bench b = {x, (size_t)g * ANB__GROUP, (size_t)g * ANB__LANES};
-        for (uint32_t k = 0; k < size; k += depth) sweep_columns(&b, &s, k, k + depth < size ? k + depth : size);
+        for (uint32_t k = 0; k < size; k += depth)
+            sweep_columns(&b, &s, k, k + depth < size ? k + depth : size);
         finish_half(&b, &s.lower, elements, offsets, only_result, minus_scale, g);
         if (!x->symmetric) finish_half(&b, &s.upper, elements + packed, NULL, only_result, minus_scale, g);
     }

@@ -22,12 +22,11 @@ typedef enum fitness { UNKNOWN, SAFE_PIVOT, UNSAFE_PIVOT } fitness;
 
 typedef struct ordering {
     anb__arena *work;
-    uint32_t size;
+    uint32_t size, left;
     uint32_t words; /* of a set of unknowns */
     bool symmetric;
     uint64_t *neighbours; /* [size][words]: sets, of those that are left */
     uint32_t *degree;
-    uint32_t *touched; /* when a neighbour was eliminated last */
     bool *done;
     /* values; not kept once the budget is spent */
     bool has_values;
@@ -155,7 +154,6 @@ static void load_pattern(ordering *o, const anb__graph *graph) {
     o->words = (o->size + 63) / 64;
     o->neighbours = anb__arena_take(o->work, (size_t)o->size * o->words * sizeof *o->neighbours);
     o->degree = anb__arena_take(o->work, o->size * sizeof *o->degree);
-    o->touched = anb__arena_take(o->work, o->size * sizeof *o->touched);
     o->done = anb__arena_take(o->work, o->size);
     o->fitness = anb__arena_take(o->work, o->size);
     for (uint32_t i = 0; i < o->size; i++) {
@@ -175,7 +173,7 @@ static uint32_t list_of(const ordering *o, uint32_t i, uint32_t *list) {
     return count;
 }
 
-static void eliminate_pattern(ordering *o, uint32_t pivot, uint32_t step, const uint32_t *list, uint32_t count) {
+static void eliminate_pattern(ordering *o, uint32_t pivot, const uint32_t *list, uint32_t count) {
     const uint64_t *around = o->neighbours + (size_t)pivot * o->words;
     for (uint32_t a = 0; a < count; a++) {
         uint64_t *set = o->neighbours + (size_t)list[a] * o->words;
@@ -185,7 +183,6 @@ static void eliminate_pattern(ordering *o, uint32_t pivot, uint32_t step, const 
         set[list[a] / 64] &= ~((uint64_t)1 << list[a] % 64);
         for (uint32_t w = 0; w < o->words; w++) degree += (uint32_t)__builtin_popcountll(set[w]);
         o->degree[list[a]] = degree;
-        o->touched[list[a]] = step + 1;
     }
 }
 
@@ -193,17 +190,14 @@ static void eliminate_pattern(ordering *o, uint32_t pivot, uint32_t step, const 
 
 #define NONE UINT32_MAX
 
-static bool is_better(const ordering *o, uint32_t i, uint32_t best) {
-    if (best == NONE || o->degree[i] != o->degree[best]) return best == NONE || o->degree[i] < o->degree[best];
-    return o->touched[i] < o->touched[best];
-}
-
-/* The safe unknown of the lowest degree, those of `late` left out; NONE if there is none. Among equals it is the one
- * whose neighbourhood has rested for longest: pivots in sequence then seldom wait for one another. */
+/* The safe unknown of the lowest degree, those of `late` left out; NONE if there is none. */
 static uint32_t choose_safe(ordering *o, const bool *late) {
-    uint32_t best = NONE;
-    for (uint32_t i = 0; i < o->size; i++)
-        if (!o->done[i] && is_better(o, i, best) && !(late && late[i]) && is_safe(o, i)) best = i;
+    uint32_t best = NONE, least = UINT32_MAX;
+    for (uint32_t i = 0; i < o->size; i++) {
+        if (o->done[i] || o->degree[i] >= least || (late && late[i]) || !is_safe(o, i)) continue;
+        best = i;
+        least = o->degree[i];
+    }
     return best;
 }
 
@@ -255,7 +249,7 @@ void anb__order_small(anb__arena *work, const anb__system *system, const anb__gr
         }
         uint32_t count = list_of(&o, pivot, list);
         if (o.has_values) eliminate_values(&o, pivot, list, count);
-        eliminate_pattern(&o, pivot, k, list, count);
+        eliminate_pattern(&o, pivot, list, count);
         o.done[pivot] = true;
         order[k] = pivot;
     }

@@ -118,8 +118,7 @@ static uint32_t suitable_groups(const anb__plan *plan) {
     return groups ? (uint32_t)groups : 1;
 }
 
-/* ---- compiling
- * --------------------------------------------------------------------------------------------- */
+/* ---- compiling -------------------------------------------------------------------------------- */
 
 static void compile(compiler *c) {
     const anb__system *system = c->system;
@@ -168,8 +167,7 @@ void anb__plan_free(anb__plan *plan) {
     free(plan);
 }
 
-/* ---- about a plan
- * --------------------------------------------------------------------------------------------- */
+/* ---- about a plan ----------------------------------------------------------------------------- */
 
 uint32_t anb__plan_slot_of(const anb__plan *plan, uint32_t entry) { return plan->slot_of[entry]; }
 uint32_t anb__plan_slot_count(const anb__plan *plan) { return plan->slot_count; }
@@ -177,8 +175,7 @@ uint32_t anb__plan_block_groups(const anb__plan *plan) { return plan->block_grou
 uint64_t anb__plan_operations(const anb__plan *plan) { return plan->operations; }
 bool anb__plan_is_symmetric(const anb__plan *plan) { return plan->symmetric; }
 
-/* ---- kernels
- * ------------------------------------------------------------------------------------------------------ */
+/* ---- kernels ---------------------------------------------------------------------------------- */
 
 static const anb__plan_kernel kernels[] = {
 #if defined(__x86_64__)

@@ -16,7 +16,6 @@ typedef struct emitter {
     anb__complex *scale; /* [size]: S = scale_i scale_j Z_ij - d */
     anb__complex *constants;
     size_t constant_count, constant_capacity;
-    uint32_t *sequence;     /* [block]: positions in the order in which they are emitted */
     size_t scratch_cells; /* of ANB__GROUP doubles */
 } emitter;
 
@@ -122,38 +121,13 @@ static void emit_panel(emitter *e, uint32_t first, uint32_t width) {
     need_scratch(e, (size_t)2 * (width + rest) * ANB__PANEL_DEPTH);
 }
 
-enum { MOST_IN_LEVELS = 512 }; /* unknowns; larger systems are kinder to the caches as they stand */
-
-static bool stands_as_it_is(const anb__layout *layout) {
-    for (uint32_t i = 0; i < layout->block; i++)
-        if (anb__height(&layout->pattern, i) > ANB__FIXED) return true; /* panels stay together */
-    return layout->block > MOST_IN_LEVELS;
-}
-
-/* The order of emission: by distance from the leaves of the elimination tree, so that operations in sequence do not wait
- * for one another. */
-static void find_sequence(emitter *e) {
-    const anb__pattern *pattern = &e->layout->pattern;
-    uint32_t block = e->layout->block, *level = anb__arena_take(e->work, ((size_t)block + 1) * sizeof *level);
-    uint32_t *next = anb__arena_take(e->work, ((size_t)block + 2) * sizeof *next);
-    e->sequence = anb__arena_take(e->work, ((size_t)block + 1) * sizeof *e->sequence);
-    bool flat = stands_as_it_is(e->layout);
-    for (uint32_t i = 0; i < block; i++) {
-        uint32_t parent = anb__height(pattern, i) ? pattern->row[pattern->start[i]] : block;
-        if (!flat && parent < block && level[parent] <= level[i]) level[parent] = level[i] + 1;
-        next[level[i] + 1]++;
-    }
-    for (uint32_t k = 0; k < block; k++) next[k + 1] += next[k];
-    for (uint32_t i = 0; i < block; i++) e->sequence[next[level[i]]++] = i;
-}
-
 static void emit_elimination(emitter *e) {
-    for (uint32_t k = 0, width; k < e->layout->block; k += width ? width : 1) {
-        width = anb__panel_width(e->layout, e->sequence[k]);
+    for (uint32_t i = 0, width; i < e->layout->block; i += width ? width : 1) {
+        width = anb__panel_width(e->layout, i);
         if (width)
-            emit_panel(e, e->sequence[k], width);
+            emit_panel(e, i, width);
         else
-            emit_eliminate(e, e->sequence[k]);
+            emit_eliminate(e, i);
     }
 }
 
@@ -324,16 +298,15 @@ static void emit_inverse(emitter *e, uint32_t i, bool across, bool with_diagonal
 
 /* The lower half of an unsymmetric inverse comes first, since the diagonal follows from it. */
 static void emit_rows(emitter *e) {
-    for (uint32_t k = e->layout->block; k-- > 0;) {
-        uint32_t at = e->sequence[k];
-        if (!is_needed(e, at)) continue;
-        if (!e->store.symmetric) emit_inverse(e, e->layout->need.index[at], false, false);
-        emit_inverse(e, e->layout->need.index[at], true, true);
+    const anb__need *need = &e->layout->need;
+    for (uint32_t i = need->count; i-- > 0;) {
+        if (need->active[i] >= e->layout->block || !is_needed(e, need->active[i])) continue;
+        if (!e->store.symmetric) emit_inverse(e, i, false, false);
+        emit_inverse(e, i, true, true);
     }
 }
 
-/* ---- results that stand in slots
- * --------------------------------------------------------------------------- */
+/* ---- results that stand in slots -------------------------------------------------------------- */
 
 static void put_copy(emitter *e, uint32_t row, uint32_t column, uint32_t *count) {
     put(e, element_at(e, row, column));
@@ -395,8 +368,7 @@ static void emit_sums(emitter *e) {
             put_sum(e, to, from);
 }
 
-/* ---- all of it
- * ------------------------------------------------------------------------------------------------ */
+/* ---- all of it -------------------------------------------------------------------------------- */
 
 static void find_ports(emitter *e) {
     uint32_t n = e->layout->pattern.size;
@@ -450,7 +422,6 @@ void anb__emit(anb__arena *work, const anb__system *system, const anb__layout *l
     plan->slot_of = slot_of;
     find_ports(&e);
     anb__store_start(&e.store, work, system, layout, slot_of);
-    find_sequence(&e);
     emit_elimination(&e);
     emit_scales(&e);
     emit_block(&e);

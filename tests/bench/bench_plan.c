@@ -2,10 +2,11 @@
  *
  *     bench_plan [ROUNDS]
  *
- * Each round fills the plan's slots and runs it over all points; KLU, analysed once, refactors and solves for all ports in
- * one call at each point; zgesv solves the dense matrix. The answers are compared; beyond 1e-9 the bench
- * fails. Times are medians of the rounds, in ns for each point. `peak` is the fraction of the core's peak of fused
- * multiply-adds, measured in the same run, eight floating-point operations to a complex multiply-add.
+ * Each round fills the plan's slots and runs it over all points; KLU, analysed once, refactors and solves for
+ * all ports in one call at each point; zgesv solves the dense matrix. The answers are compared; beyond 1e-9
+ * the bench fails. Times are medians of the rounds, in ns for each point. `peak` is the fraction of the
+ * core's peak of fused multiply-adds, measured in the same run, eight floating-point operations to a complex
+ * multiply-add.
  */
 #include <complex.h>
 #include <klu.h>
@@ -49,7 +50,7 @@ static double median(double *times, int count) {
     return times[count / 2];
 }
 
-/* ---- the core's peak --------------------------------------------------------------------------- */
+/* ---- the core's peak --------------------------------------------------------------------- */
 
 #if defined(__x86_64__)
 #include <immintrin.h>
@@ -88,13 +89,13 @@ static double peak_of(const char *kernel) {
 static double peak_of(const char *kernel) { return kernel ? 0 : 0; }
 #endif
 
-/* ---- networks -------------------------------------------------------------------------------------- */
+/* ---- networks ---------------------------------------------------------------------------- */
 
 typedef struct subject {
     const char *name;
     uint32_t size, count, capacity, ports;
-    anb__entry *entries;     /* lower triangle */
-    double complex *values;  /* [entry][point] */
+    anb__entry *entries;    /* lower triangle */
+    double complex *values; /* [entry][point] */
     uint32_t *first_term;
     anb__term *terms;
     anb__complex *scale, *offset;
@@ -226,14 +227,15 @@ static subject feed(void) {
     return s;
 }
 
-/* ---- ours -------------------------------------------------------------------------------------------- */
+/* ---- ours -------------------------------------------------------------------------------- */
 
 typedef struct ours {
     anb__plan *plan;
     const anb__plan_kernel *kernel;
     uint32_t groups; /* of a block */
     uint32_t *slot_of;
-    double *slots, *values, *out; /* values: [block][entry][groups][16], as the evaluation of parts leaves them */
+    double *slots, *values,
+        *out; /* values: [block][entry][groups][16], as the evaluation of parts leaves them */
     uint8_t suspect[64];
 } ours;
 
@@ -244,9 +246,17 @@ static anb_status compile(const subject *s, anb__plan **plan) {
             double complex v = s->values[(size_t)e * POINTS + 125 * k];
             samples[k * s->count + e] = anb__cx(creal(v), cimag(v));
         }
-    anb__system system = {.size = s->size, .symmetric = true, .entry_count = s->count, .entries = s->entries,
-                          .sample_count = 8, .samples = samples, .port_count = s->ports, .first_term = s->first_term,
-                          .terms = s->terms, .scale = s->scale, .offset = s->offset};
+    anb__system system = {.size = s->size,
+                          .symmetric = true,
+                          .entry_count = s->count,
+                          .entries = s->entries,
+                          .sample_count = 8,
+                          .samples = samples,
+                          .port_count = s->ports,
+                          .first_term = s->first_term,
+                          .terms = s->terms,
+                          .scale = s->scale,
+                          .offset = s->offset};
     anb_status status = anb__plan_compile(&system, plan);
     free(samples);
     return status;
@@ -258,7 +268,8 @@ static ours prepare(const subject *s, const char *kernel) {
     ours x = {.kernel = anb__plan_kernel_find(kernel)};
     if (!x.kernel) die("no such kernel");
     if (compile(s, &x.plan) != ANB_OK) die("out of memory");
-    x.groups = getenv("BENCH_GROUPS") ? (uint32_t)atoi(getenv("BENCH_GROUPS")) : anb__plan_block_groups(x.plan);
+    x.groups =
+        getenv("BENCH_GROUPS") ? (uint32_t)atoi(getenv("BENCH_GROUPS")) : anb__plan_block_groups(x.plan);
     uint32_t block = x.groups * 8, blocks = (POINTS + block - 1) / block;
     x.slots = take((size_t)anb__plan_slot_count(x.plan) * x.groups * 128);
     x.out = take(elements_of(s) * blocks * x.groups * 128);
@@ -284,7 +295,8 @@ static double run_ours(const subject *s, ours *x, bool *any_suspect) {
         const double *from = x->values + (size_t)b * s->count * x->groups * 16;
         for (uint32_t e = 0; e < s->count; e++, from += x->groups * 16)
             memcpy(x->slots + (size_t)x->slot_of[e] * x->groups * 16, from, x->groups * 128);
-        x->kernel->run(x->plan, x->slots, x->groups, x->out + elements_of(s) * b * x->groups * 16, x->suspect);
+        x->kernel->run(x->plan, x->slots, x->groups, x->out + elements_of(s) * b * x->groups * 16,
+                       x->suspect);
         for (uint32_t g = 0; g < x->groups; g++) *any_suspect |= x->suspect[g] != 0;
     }
     return (now() - start) * 1e9 / (blocks * block);
@@ -310,11 +322,11 @@ static void free_ours(ours *x) {
     free(x->slot_of);
 }
 
-/* ---- the others ------------------------------------------------------------------------------------------- */
+/* ---- the others -------------------------------------------------------------------------- */
 
 typedef struct columns {
     int *start, *row;
-    uint32_t *source; /* entry of each place */
+    uint32_t *source;       /* entry of each place */
     double complex *values; /* [point][place] */
     int count;
 } columns;
@@ -326,7 +338,8 @@ static columns columns_of(const subject *s) {
         for (uint32_t row = 0; row < s->size; row++)
             for (uint32_t e = 0; e < s->count; e++) {
                 const anb__entry *at = &s->entries[e];
-                if (!(at->row == row && at->column == column) && !(at->row == column && at->column == row)) continue;
+                if (!(at->row == row && at->column == column) && !(at->row == column && at->column == row))
+                    continue;
                 c.row[c.count] = (int)row;
                 c.source[c.count++] = e;
             }
@@ -335,7 +348,8 @@ static columns columns_of(const subject *s) {
     c.values = take((size_t)POINTS * (size_t)c.count * sizeof *c.values);
     for (int p = 0; p < POINTS; p++)
         for (int k = 0; k < c.count; k++)
-            c.values[(size_t)p * (size_t)c.count + (size_t)k] = s->values[(size_t)c.source[k] * POINTS + (size_t)p];
+            c.values[(size_t)p * (size_t)c.count + (size_t)k] =
+                s->values[(size_t)c.source[k] * POINTS + (size_t)p];
     return c;
 }
 
@@ -357,7 +371,8 @@ static double difference(const subject *s, const ours *x, const double complex *
         for (uint32_t from = 0; from <= to; from++) {
             size_t element = (size_t)to * (to + 1) / 2 + from;
             const double *here = x->out + (point / 8 * elements_of(s) + element) * 16 + point % 8;
-            double complex theirs = b[(size_t)from * s->size + s->terms[to].unknown] * (2.0 / 50) - (to == from);
+            double complex theirs =
+                b[(size_t)from * s->size + s->terms[to].unknown] * (2.0 / 50) - (to == from);
             double error = cabs(here[0] + I * here[8] - theirs);
             if (!(error <= worst)) worst = isnan(error) ? INFINITY : error;
         }
@@ -371,14 +386,15 @@ static double run_klu(const subject *s, const columns *c, const ours *x, double 
     common.scale = -1;
     common.btf = 0;
     klu_symbolic *symbolic = klu_analyze((int)s->size, c->start, c->row, &common);
-    klu_numeric *numeric = symbolic ? klu_z_factor(c->start, c->row, (double *)c->values, symbolic, &common) : NULL;
+    klu_numeric *numeric =
+        symbolic ? klu_z_factor(c->start, c->row, (double *)c->values, symbolic, &common) : NULL;
     if (!numeric) die("KLU fails");
     double complex *b = take((size_t)s->size * s->ports * sizeof *b);
     double time = 0;
     for (uint32_t p = 0; p < POINTS; p++) {
         double start = now();
-        klu_z_refactor(c->start, c->row, (double *)(c->values + (size_t)p * (size_t)c->count), symbolic, numeric,
-                       &common);
+        klu_z_refactor(c->start, c->row, (double *)(c->values + (size_t)p * (size_t)c->count), symbolic,
+                       numeric, &common);
         unit_sources(s, b);
         klu_z_solve(symbolic, numeric, (int)s->size, (int)s->ports, (double *)b, &common);
         time += now() - start;
@@ -402,8 +418,8 @@ static double run_lapack(const subject *s, const columns *c, uint32_t points) {
             for (int k = c->start[column]; k < c->start[column + 1]; k++)
                 dense[column * n + (size_t)c->row[k]] = c->values[(size_t)p * (size_t)c->count + (size_t)k];
         unit_sources(s, b);
-        if (LAPACKE_zgesv(LAPACK_COL_MAJOR, (lapack_int)n, (lapack_int)s->ports, dense, (lapack_int)n, pivots, b,
-                          (lapack_int)n))
+        if (LAPACKE_zgesv(LAPACK_COL_MAJOR, (lapack_int)n, (lapack_int)s->ports, dense, (lapack_int)n, pivots,
+                          b, (lapack_int)n))
             die("zgesv fails");
     }
     double time = (now() - start) * 1e9 / points;
@@ -413,7 +429,7 @@ static double run_lapack(const subject *s, const columns *c, uint32_t points) {
     return time;
 }
 
-/* ---- one network --------------------------------------------------------------------------------------------- */
+/* ---- one network ------------------------------------------------------------------------- */
 
 static double compile_us(const subject *s) {
     double times[25];
@@ -440,14 +456,17 @@ static bool measure(subject s, const char *kernel, int rounds) {
         mine[r] = run_ours(&s, &x, &suspect);
         fill[r] = run_fill(&s, &x);
         klu[r] = r && s.ports > 8 && r % 4 ? klu[r - 1] : run_klu(&s, &c, &x, NULL);
-        dense[r] = r && s.size > 100 ? dense[r - 1] : run_lapack(&s, &c, s.size > 100 ? DENSE_POINTS : POINTS);
+        dense[r] =
+            r && s.size > 100 ? dense[r - 1] : run_lapack(&s, &c, s.size > 100 ? DENSE_POINTS : POINTS);
     }
-    double a = median(mine, rounds), f = median(fill, rounds), k = median(klu, rounds), d = median(dense, rounds);
+    double a = median(mine, rounds), f = median(fill, rounds), k = median(klu, rounds),
+           d = median(dense, rounds);
     double flops = 8 * (double)anb__plan_operations(x.plan), peak = peak_of(x.kernel->name);
-    printf("%-12s %s  ours %8.1f ns (of it values to slots %6.1f)  KLU %9.1f (%5.1f x)  zgesv %10.1f (%6.1f x)  "
-           "peak %.2f of %.0f GFLOP/s  compile %.1f us  %u groups  differ %.0e%s\n",
-           s.name, x.kernel->name, a, f, k, k / a, d, d / a, peak > 0 ? flops / ((a - f) * 1e-9) / peak : 0, peak * 1e-9,
-           compile_us(&s), x.groups, worst, suspect ? "  SUSPECT" : "");
+    printf(
+        "%-12s %s  ours %8.1f ns (of it values to slots %6.1f)  KLU %9.1f (%5.1f x)  zgesv %10.1f (%6.1f x)  "
+        "peak %.2f of %.0f GFLOP/s  compile %.1f us  %u groups  differ %.0e%s\n",
+        s.name, x.kernel->name, a, f, k, k / a, d, d / a, peak > 0 ? flops / ((a - f) * 1e-9) / peak : 0,
+        peak * 1e-9, compile_us(&s), x.groups, worst, suspect ? "  SUSPECT" : "");
     bool good = worst <= AGREEMENT && !suspect;
     free_ours(&x);
     free_columns(&c);

@@ -1,7 +1,7 @@
 // Numbers to text and back, beside the C++ library's.
 //
-//     number_compare --check N    N random bit patterns and as many other hard values, byte for byte and bit for bit
-//     number_compare --time       medians of 11 rounds in one run, and their ratios
+//     number_compare --check N    N random bit patterns and as many other hard values, byte for byte and bit
+//     for bit number_compare --time       medians of 11 rounds in one run, and their ratios
 //
 // A difference ends with status 1.
 #include <algorithm>
@@ -43,7 +43,8 @@ bool agrees(double value) {
     size_t sign = ours[0] == '-';
     size_t taken = anb__number_read(ours + sign, length - sign, &a);
     std::from_chars(ours + sign, ours + length, b);
-    if (taken == length - sign && same(a, b)) return true;
+    if (taken == length - sign && same(a, b))
+        return true;
     printf("%.*s reads as %.17g, not %.17g\n", int(length), ours, a, b);
     return false;
 }
@@ -51,10 +52,14 @@ bool agrees(double value) {
 // Random bit patterns, S-parameters, frequencies and whole numbers in turn.
 double pick(std::mt19937_64 &random, long i) {
     switch (i % 4) {
-    case 0: return from_bits(random());
-    case 1: return double(int64_t(random())) / 9.3e18;
-    case 2: return double(random() % 10000000) / 1000;
-    default: return double(random() >> random() % 64);
+    case 0:
+        return from_bits(random());
+    case 1:
+        return double(int64_t(random())) / 9.3e18;
+    case 2:
+        return double(random() % 10000000) / 1000;
+    default:
+        return double(random() >> random() % 64);
     }
 }
 
@@ -63,8 +68,10 @@ int check(long count) {
     long bad = 0;
     for (long i = 0; i < count && bad < 20; i++) {
         double bits = from_bits(random()), other = pick(random, i);
-        if (bits - bits == 0) bad += !agrees(bits);
-        if (other - other == 0) bad += !agrees(other);
+        if (bits - bits == 0)
+            bad += !agrees(bits);
+        if (other - other == 0)
+            bad += !agrees(other);
     }
     printf("%ld bit patterns and as many other values checked, %ld differ\n", count, bad);
     return bad ? 1 : 0;
@@ -87,30 +94,48 @@ int measure() {
     std::vector<std::string> texts;
     char buffer[64];
     double sum = 0;
-    for (int i = 0; i < 100000; i++) values.push_back(double(int64_t(random())) / 9.3e18);
-    for (double v : values) texts.emplace_back(buffer, std::to_chars(buffer, buffer + sizeof buffer, std::abs(v)).ptr);
+    for (int i = 0; i < 100000; i++)
+        values.push_back(double(int64_t(random())) / 9.3e18);
+    for (double v : values)
+        texts.emplace_back(buffer, std::to_chars(buffer, buffer + sizeof buffer, std::abs(v)).ptr);
     for (int round = 0; round < 11; round++) {
-        ours.push_back(seconds([&] { for (double v : values) sum += double(anb__number_write(v, buffer)); }));
+        ours.push_back(seconds([&] {
+            for (double v : values)
+                sum += double(anb__number_write(v, buffer));
+        }));
         theirs.push_back(seconds([&] {
-            for (double v : values) sum += double(std::to_chars(buffer, buffer + sizeof buffer, v).ptr - buffer);
+            for (double v : values)
+                sum += double(std::to_chars(buffer, buffer + sizeof buffer, v).ptr - buffer);
         }));
         double v = 0;
-        ours_read.push_back(seconds([&] { for (auto &t : texts) anb__number_read(t.data(), t.size(), &v), sum += v; }));
-        theirs_read.push_back(seconds([&] { for (auto &t : texts) std::from_chars(t.data(), t.data() + t.size(), v), sum += v; }));
-        strtod_read.push_back(seconds([&] { for (auto &t : texts) sum += strtod(t.c_str(), nullptr); }));
+        ours_read.push_back(seconds([&] {
+            for (auto &t : texts)
+                anb__number_read(t.data(), t.size(), &v), sum += v;
+        }));
+        theirs_read.push_back(seconds([&] {
+            for (auto &t : texts)
+                std::from_chars(t.data(), t.data() + t.size(), v), sum += v;
+        }));
+        strtod_read.push_back(seconds([&] {
+            for (auto &t : texts)
+                sum += strtod(t.c_str(), nullptr);
+        }));
     }
     double n = double(values.size()) * 1e-9, a = median(ours) / n, b = median(theirs) / n;
     double c = median(ours_read) / n, d = median(theirs_read) / n, e = median(strtod_read) / n;
     printf("writing  ours %.1f ns, std::to_chars %.1f ns: ratio %.2f\n", a, b, a / b);
-    printf("reading  ours %.1f ns, std::from_chars %.1f ns: ratio %.2f; strtod %.1f ns: ratio %.2f\n", c, d, c / d, e, c / e);
+    printf("reading  ours %.1f ns, std::from_chars %.1f ns: ratio %.2f; strtod %.1f ns: ratio %.2f\n", c, d,
+           c / d, e, c / e);
     return sum == 42 ? 2 : 0;
 }
 
 } // namespace
 
 int main(int count, char **arguments) {
-    if (count == 3 && !strcmp(arguments[1], "--check")) return check(atol(arguments[2]));
-    if (count == 2 && !strcmp(arguments[1], "--time")) return measure();
+    if (count == 3 && !strcmp(arguments[1], "--check"))
+        return check(atol(arguments[2]));
+    if (count == 2 && !strcmp(arguments[1], "--time"))
+        return measure();
     fprintf(stderr, "usage: number_compare --check N | --time\n");
     return 2;
 }

@@ -43,8 +43,10 @@ int LLVMFuzzerTestOneInput(const uint8_t *bytes, size_t length) {
     if (!context) return 0;
     anb_status status = anb_netlist_parse(context, "fuzz.anab", (const char *)bytes, length, NULL, &netlist);
     read_messages(context);
-    if ((status == ANB_OK) != (netlist != NULL) || (status == ANB_INVALID && !anb_error_count(context))) abort();
-    if (netlist && anb_netlist_part_count(netlist) <= MOST_PARTS && anb_netlist_port_count(netlist) <= MOST_PORTS) {
+    if ((status == ANB_OK) != (netlist != NULL) || (status == ANB_INVALID && !anb_error_count(context)))
+        abort();
+    if (netlist && anb_netlist_part_count(netlist) <= MOST_PARTS &&
+        anb_netlist_port_count(netlist) <= MOST_PORTS) {
         describe(netlist);
         if (anb_netlist_frequency_count(netlist) <= MOST_POINTS) {
             anb_sweep_options sweep = {.threads = 1};

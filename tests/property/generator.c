@@ -233,8 +233,7 @@ static void add_part(maker *m, anb__part_kind kind) {
     m->tally->negated += part->negated;
 }
 
-/* ---- networks
- * ---------------------------------------------------------------------------------------------- */
+/* ---- networks --------------------------------------------------------------------------------- */
 
 static bool one_mode_only(anb__part_kind kind) {
     return kind == ANB__PART_TRANSFORMER || kind == ANB__PART_LINE || kind == ANB__PART_COUPLED_INDUCTORS ||

@@ -165,8 +165,7 @@ static void test_two_ways(void **state) {
     report(&m);
 }
 
-/* ---- bits
- * ---------------------------------------------------------------------------------------------------- */
+/* ---- bits ------------------------------------------------------------------------------------- */
 
 static void test_blocks_and_kernels(void **state) {
     static sample s;
@@ -192,8 +191,7 @@ static void test_blocks_and_kernels(void **state) {
     report(&m);
 }
 
-/* ---- physics
- * --------------------------------------------------------------------------------------------------- */
+/* ---- physics ---------------------------------------------------------------------------------- */
 
 /* The power that leaves for a random incident wave, over what came in. */
 static double power_out(const solved *a, uint32_t ports, uint64_t *state) {
@@ -331,8 +329,7 @@ static void test_cut_line(void **state) {
     report(&m);
 }
 
-/* ---- a part by itself
- * ----------------------------------------------------------------------------------------------- */
+/* ---- a part by itself ------------------------------------------------------------------------- */
 
 /* A + B Y = 0 with Y from the stamps, row by row against the size of what is summed. Parts that bring unknown
  * currents into the matrix have no Y. */
@@ -401,9 +398,7 @@ static void test_equations_against_stamps(void **state) {
     report(&m);
 }
 
-/* ---- counts
- * -------------------------------------------------------------------------------------------------------------
- */
+/* ---- counts ----------------------------------------------------------------------------------- */
 
 static void test_counts(void **state) {
     unsigned least = network_count() >= 10000 ? 200 : 1;

