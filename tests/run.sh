@@ -96,7 +96,7 @@ phase_threads() {
     local runner command="$place/threads/anabranch" netlist
     runner="setarch $(uname -m) -R"
     build threads gcc -DCMAKE_BUILD_TYPE=RelWithDebInfo -DANB_SANITIZE=thread -- threaded || return
-    tests threads threads -L '^threads$'
+    ANB_NETWORKS=200 tests threads threads -L '^threads$'
     check threads-cli $runner env ANABRANCH="$command" python3 tests/cli/run.py thread
     for netlist in netlists/*.anab; do
         check "threads-$(basename "$netlist")" $runner bash -c '

@@ -79,7 +79,9 @@ header() {
 
 # The names of the static library take none from the program, and nothing in it can be written to.
 static_names() { ! nm -g --defined-only "$archive" | awk 'NF == 3 {print $3}' | grep -v '^anb_'; }
-static_state() { ! size -A "$archive" | grep -E '^\.(data|bss|tdata|tbss)\S* +[1-9]' | grep -v '^\.data\.rel\.ro'; }
+static_state() {
+    ! size -A "$archive" | grep -E '^\.(data|bss|tdata|tbss)\S* +[1-9]' | grep -v '^\.data\.rel\.ro'
+}
 
 versioned() {
     [ -L "$library" ] && readelf -d "$library" | grep "SONAME.*libanabranch.so.${VERSION%%.*}"

@@ -687,12 +687,6 @@ static void poison(void **unused) {
 
 /* ---- time -------------------------------------------------------------------------------- */
 
-static double seconds(void) {
-    struct timespec now;
-    clock_gettime(CLOCK_MONOTONIC, &now);
-    return (double)now.tv_sec + 1e-9 * (double)now.tv_nsec;
-}
-
 int main(void) {
     const struct CMUnitTest tests[] = {
         cmocka_unit_test(random_systems), cmocka_unit_test(feeds),
@@ -701,6 +695,7 @@ int main(void) {
         cmocka_unit_test(ports_as_sums),  cmocka_unit_test(negative_and_shared_ports),
         cmocka_unit_test(no_ports),       cmocka_unit_test(transformers),
         cmocka_unit_test(resonance),      cmocka_unit_test(huge_admittances),
-        cmocka_unit_test(poison),     };
+        cmocka_unit_test(poison),
+    };
     return cmocka_run_group_tests(tests, NULL, NULL) ? 1 : 0;
 }
