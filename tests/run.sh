@@ -13,7 +13,7 @@ set -u
 cd "$(dirname "$(realpath "$0")")/.." || exit 1
 . tests/packages.sh
 
-phases="packages gcc tests clang sanitizers threads valgrind fuzz cppcheck tidy shell tree"
+phases="packages gcc tests bench clang sanitizers threads valgrind fuzz cppcheck tidy shell tree"
 place=$PWD/build-check
 cores=$(nproc)
 passed=0 failed=0 skipped="" closings="" started=$SECONDS
@@ -80,6 +80,12 @@ phase_packages() { packages_install "$packages_build $packages_test" || exit 1; 
 phase_gcc() { build gcc gcc -DANB_BENCH=ON; }
 
 phase_tests() { tests gcc gcc; }
+
+# Speed is not judged here; that the answers agree with those of other ways to them is.
+phase_bench() {
+    check bench-sweep "$place/gcc/tests/bench_sweep" --points 101 --rounds 1 tests/bench/networks/*.anab
+    check bench-numbers "$place/gcc/tests/number_compare" --check 1000000
+}
 
 phase_clang() {
     build clang clang -DCMAKE_EXPORT_COMPILE_COMMANDS=ON && tests clang clang -L '^(unit|cases)$'

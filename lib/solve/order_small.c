@@ -92,7 +92,6 @@ static void raise_to(double *most, const double *v) {
 /* How much larger than the pivot its column or its initial value is, squared, at the worst sample. */
 static double weakness(ordering *o, uint32_t i) {
     double most[ANB__LANES], worst = 0;
-    const double *d = value_at(o, i, i);
     memcpy(most, o->initial[i], sizeof most);
     for (uint32_t w = 0; w < o->words; w++)
         for (uint64_t set = o->neighbours[(size_t)i * o->words + w]; set; set &= set - 1) {
@@ -100,7 +99,7 @@ static double weakness(ordering *o, uint32_t i) {
             raise_to(most, value_at(o, j, i));
             if (!o->symmetric) raise_to(most, value_at(o, i, j));
         }
-    d = value_at(o, i, i);
+    const double *d = value_at(o, i, i);
     for (int k = 0; k < ANB__LANES; k++) {
         double ratio = most[k] / (d[k] * d[k] + d[k + ANB__LANES] * d[k + ANB__LANES]);
         if (most[k] > 0 && !(ratio <= worst)) worst = isnan(ratio) ? INFINITY : ratio;
