@@ -55,6 +55,11 @@ bool anb__form_check(anb__report *report, const anb_write_options *options, anb_
     form->format = options->format;
     form->digits = options->digits;
     if (!read_version(report, options, form) || !read_unit(report, options, form)) return false;
+    if (form->kind != ANB_TOUCHSTONE) { /* these have one form: hertz, real and imaginary parts */
+        form->format = ANB_RI;
+        form->unit = "Hz";
+        form->unit_shift = 0;
+    }
     if (options->digits < 0 || options->digits > 17) {
         anb__error(report, nowhere, "digits", "%d is no number of digits: 1 to 17", options->digits);
         return false;
@@ -93,7 +98,7 @@ bool anb__format_elements(const anb__form *form, const anb_data *data, uint64_t 
     bool finite = true;
     for (size_t e = 0; e < data->elements; e++) {
         anb__complex s = anb__s_at(data, point, e);
-        finite = finite && anb__cis_finite(s);
+        finite = finite && anb__cis_finite(s) && (form->format == ANB_RI || isfinite(anb__cabs(s)));
         out[e].length = (uint8_t)put_pair(form, s, between, out[e].bytes);
     }
     return finite;

@@ -27,8 +27,8 @@ typedef struct sheet {
     anb__text text;
 } sheet;
 
-/* S(to, from) at a point is 0.<to><from> - (point + 0.5) j, both indices from 1; S(2, 1) at the first point is
- * 0.21 - 0.5j. Frequencies are 1.5 GHz, 2.5 GHz, ... */
+/* S(to, from) at a point is 0.<to><from> - (point + 0.5) j, both indices from 1; S(2, 1) at the first point
+ * is 0.21 - 0.5j. Frequencies are 1.5 GHz, 2.5 GHz, ... */
 static double real_part(uint32_t to, uint32_t from) { return (10 * (to + 1) + from + 1) / 100.0; }
 
 static void set_s(anb_data *data, uint64_t point, size_t to, size_t from, double re, double im) {
@@ -54,12 +54,8 @@ static void sheet_begin(sheet *s, uint32_t ports, uint64_t points, bool symmetri
     memset(s, 0, sizeof *s);
     s->report.arena = &s->arena;
     s->data = sample_data(ports, points, symmetric);
-    s->form = (anb__form){.ports = ports,
-                          .points = points,
-                          .reference = reference,
-                          .title = "",
-                          .source = "",
-                          .names = names};
+    s->form = (anb__form){
+        .ports = ports, .points = points, .reference = reference, .title = "", .source = "", .names = names};
 }
 
 static void sheet_end(sheet *s) {
@@ -118,7 +114,8 @@ static void one_port(void **state) {
     sheet s;
     (void)state;
     sheet_begin(&s, 1, 2, false, alike);
-    gives(&s, &(anb_write_options){0}, "! port 1: in\n# Hz S RI R 50\n1.5e9 0.11 -0.5\n2.5e9 0.11 -1.5\n");
+    gives(&s, &(anb_write_options){0},
+          "! port 1: in\n# Hz S RI R 50\n1.5e+09 0.11 -0.5\n2.5e+09 0.11 -1.5\n");
     sheet_end(&s);
 }
 
@@ -128,8 +125,8 @@ static void two_ports(void **state) {
     sheet_begin(&s, 2, 2, false, alike);
     gives(&s, &(anb_write_options){0},
           PORTS_2 "# Hz S RI R 50\n"
-                  "1.5e9 0.11 -0.5 0.21 -0.5 0.12 -0.5 0.22 -0.5\n"
-                  "2.5e9 0.11 -1.5 0.21 -1.5 0.12 -1.5 0.22 -1.5\n");
+                  "1.5e+09 0.11 -0.5 0.21 -0.5 0.12 -0.5 0.22 -0.5\n"
+                  "2.5e+09 0.11 -1.5 0.21 -1.5 0.12 -1.5 0.22 -1.5\n");
     sheet_end(&s);
 }
 
@@ -139,10 +136,10 @@ static void three_ports(void **state) {
     sheet_begin(&s, 3, 2, false, alike);
     gives(&s, &(anb_write_options){0},
           PORTS_3 "# Hz S RI R 50\n"
-                  "1.5e9 0.11 -0.5 0.12 -0.5 0.13 -0.5\n"
+                  "1.5e+09 0.11 -0.5 0.12 -0.5 0.13 -0.5\n"
                   "0.21 -0.5 0.22 -0.5 0.23 -0.5\n"
                   "0.31 -0.5 0.32 -0.5 0.33 -0.5\n"
-                  "2.5e9 0.11 -1.5 0.12 -1.5 0.13 -1.5\n"
+                  "2.5e+09 0.11 -1.5 0.12 -1.5 0.13 -1.5\n"
                   "0.21 -1.5 0.22 -1.5 0.23 -1.5\n"
                   "0.31 -1.5 0.32 -1.5 0.33 -1.5\n");
     sheet_end(&s);
@@ -154,7 +151,7 @@ static void five_ports(void **state) {
     sheet_begin(&s, 5, 1, false, alike);
     gives(&s, &(anb_write_options){0},
           PORTS_5 "# Hz S RI R 50\n"
-                  "1.5e9 0.11 -0.5 0.12 -0.5 0.13 -0.5 0.14 -0.5\n0.15 -0.5\n"
+                  "1.5e+09 0.11 -0.5 0.12 -0.5 0.13 -0.5 0.14 -0.5\n0.15 -0.5\n"
                   "0.21 -0.5 0.22 -0.5 0.23 -0.5 0.24 -0.5\n0.25 -0.5\n"
                   "0.31 -0.5 0.32 -0.5 0.33 -0.5 0.34 -0.5\n0.35 -0.5\n"
                   "0.41 -0.5 0.42 -0.5 0.43 -0.5 0.44 -0.5\n0.45 -0.5\n"
@@ -167,17 +164,17 @@ static void symmetric(void **state) {
     sheet s;
     (void)state;
     sheet_begin(&s, 2, 1, true, alike);
-    ends_with(&s, &(anb_write_options){0}, "R 50\n1.5e9 0.11 -0.5 0.21 -0.5 0.21 -0.5 0.22 -0.5\n");
+    ends_with(&s, &(anb_write_options){0}, "R 50\n1.5e+09 0.11 -0.5 0.21 -0.5 0.21 -0.5 0.22 -0.5\n");
     sheet_end(&s);
     sheet_begin(&s, 3, 1, true, alike);
     ends_with(&s, &(anb_write_options){0},
-              "R 50\n1.5e9 0.11 -0.5 0.21 -0.5 0.31 -0.5\n"
+              "R 50\n1.5e+09 0.11 -0.5 0.21 -0.5 0.31 -0.5\n"
               "0.21 -0.5 0.22 -0.5 0.32 -0.5\n0.31 -0.5 0.32 -0.5 0.33 -0.5\n");
     sheet_end(&s);
     sheet_begin(&s, 5, 1, true, alike);
-    ends_with(&s, &(anb_write_options){0},
-              "\n0.51 -0.5 0.52 -0.5 0.53 -0.5 0.54 -0.5\n0.55 -0.5\n");
-    assert_non_null(strstr(s.text.bytes, "R 50\n1.5e9 0.11 -0.5 0.21 -0.5 0.31 -0.5 0.41 -0.5\n0.51 -0.5\n"));
+    ends_with(&s, &(anb_write_options){0}, "\n0.51 -0.5 0.52 -0.5 0.53 -0.5 0.54 -0.5\n0.55 -0.5\n");
+    assert_non_null(
+        strstr(s.text.bytes, "R 50\n1.5e+09 0.11 -0.5 0.21 -0.5 0.31 -0.5 0.41 -0.5\n0.51 -0.5\n"));
     sheet_end(&s);
 }
 
@@ -186,7 +183,7 @@ static void many_points(void **state) {
     sheet s;
     (void)state;
     sheet_begin(&s, 1, 2 * ANB__LANES + 3, false, alike);
-    ends_with(&s, &(anb_write_options){0}, "\n1.85e10 0.11 -17.5\n1.95e10 0.11 -18.5\n");
+    ends_with(&s, &(anb_write_options){0}, "\n1.85e+10 0.11 -17.5\n1.95e+10 0.11 -18.5\n");
     sheet_end(&s);
 }
 
@@ -197,7 +194,7 @@ static void version_1_1(void **state) {
     (void)state;
     sheet_begin(&s, 3, 1, false, unlike);
     assert_true(write_sheet(&s, &(anb_write_options){.version = "1.1"}));
-    assert_non_null(strstr(s.text.bytes, "\n# Hz S RI R 50 75 100\n1.5e9 0.11"));
+    assert_non_null(strstr(s.text.bytes, "\n# Hz S RI R 50 75 100\n1.5e+09 0.11"));
     assert_null(strchr(s.text.bytes, '['));
     sheet_end(&s);
 }
@@ -209,7 +206,7 @@ static void version_2(void **state) {
     const char *want = "[Version] 2.0\n" PORTS_2 "# Hz S RI R 50\n"
                        "[Number of Ports] 2\n[Two-Port Data Order] 21_12\n[Number of Frequencies] 1\n"
                        "[Reference] 50 75\n[Matrix Format] Full\n[Network Data]\n"
-                       "1.5e9 0.11 -0.5 0.21 -0.5 0.12 -0.5 0.22 -0.5\n[End]\n";
+                       "1.5e+09 0.11 -0.5 0.21 -0.5 0.12 -0.5 0.22 -0.5\n[End]\n";
     gives(&s, &(anb_write_options){0}, want); /* what unlike references take */
     gives(&s, &(anb_write_options){.version = "2"}, want);
     gives(&s, &(anb_write_options){.version = "2.0"}, want);
@@ -239,7 +236,7 @@ static void version_2_of_equal_references(void **state) {
     sheet_begin(&s, 1, 1, false, alike);
     gives(&s, &(anb_write_options){.version = "2"},
           "[Version] 2.0\n! port 1: in\n# Hz S RI R 50\n[Number of Ports] 1\n[Number of Frequencies] 1\n"
-          "[Reference] 50\n[Matrix Format] Full\n[Network Data]\n1.5e9 0.11 -0.5\n[End]\n");
+          "[Reference] 50\n[Matrix Format] Full\n[Network Data]\n1.5e+09 0.11 -0.5\n[End]\n");
     sheet_end(&s);
 }
 
@@ -273,8 +270,8 @@ static void units(void **state) {
     sheet s;
     (void)state;
     sheet_begin(&s, 1, 1, false, alike);
-    ends_with(&s, &(anb_write_options){.unit = "Hz"}, "# Hz S RI R 50\n1.5e9 0.11 -0.5\n");
-    ends_with(&s, &(anb_write_options){.unit = "kHz"}, "# kHz S RI R 50\n1.5e6 0.11 -0.5\n");
+    ends_with(&s, &(anb_write_options){.unit = "Hz"}, "# Hz S RI R 50\n1.5e+09 0.11 -0.5\n");
+    ends_with(&s, &(anb_write_options){.unit = "kHz"}, "# kHz S RI R 50\n1500000 0.11 -0.5\n");
     ends_with(&s, &(anb_write_options){.unit = "MHz"}, "# MHz S RI R 50\n1500 0.11 -0.5\n");
     ends_with(&s, &(anb_write_options){.unit = "GHz"}, "# GHz S RI R 50\n1.5 0.11 -0.5\n");
     s.data->frequencies[0] = 1234567890.125; /* digits that a division by 1e9 would change */
@@ -290,12 +287,12 @@ static void formats(void **state) {
     set_s(s.data, 0, 1, 0, 0, -2);
     set_s(s.data, 0, 0, 1, -0.1, 0);
     set_s(s.data, 0, 1, 1, 0, 0);
-    ends_with(&s, &(anb_write_options){.format = ANB_RI}, "S RI R 50\n1.5e9 3 4 0 -2 -0.1 0 0 0\n");
+    ends_with(&s, &(anb_write_options){.format = ANB_RI}, "S RI R 50\n1.5e+09 3 4 0 -2 -0.1 0 0 0\n");
     /* atan(4/3) = 53.13010235 deg, 20 log10 5 = 13.97940009, 20 log10 2 = 6.020599913: elementary */
     ends_with(&s, &(anb_write_options){.format = ANB_MA, .digits = 10},
-              "S MA R 50\n1.5e9 5 53.13010235 2 -90 0.1 180 0 0\n");
+              "S MA R 50\n1.5e+09 5 53.13010235 2 -90 0.1 180 0 0\n");
     ends_with(&s, &(anb_write_options){.format = ANB_DB, .digits = 10},
-              "S DB R 50\n1.5e9 13.97940009 53.13010235 6.020599913 -90 -20 180 -9999 0\n");
+              "S DB R 50\n1.5e+09 13.97940009 53.13010235 6.020599913 -90 -20 180 -9999 0\n");
     sheet_end(&s);
 }
 
@@ -305,8 +302,8 @@ static void zeros(void **state) {
     (void)state;
     sheet_begin(&s, 1, 1, false, alike);
     set_s(s.data, 0, 0, 0, -0.0, -0.0);
-    ends_with(&s, &(anb_write_options){.format = ANB_DB}, "R 50\n1.5e9 -9999 0\n");
-    ends_with(&s, &(anb_write_options){.format = ANB_MA}, "R 50\n1.5e9 0 0\n");
+    ends_with(&s, &(anb_write_options){.format = ANB_DB}, "R 50\n1.5e+09 -9999 0\n");
+    ends_with(&s, &(anb_write_options){.format = ANB_MA}, "R 50\n1.5e+09 0 0\n");
     sheet_end(&s);
 }
 
@@ -318,7 +315,8 @@ static void digits(void **state) {
     s.data->frequencies[0] = 1234567891;
     ends_with(&s, &(anb_write_options){.digits = 1}, "R 50\n1234567891 0.7 -0.3\n");
     ends_with(&s, &(anb_write_options){.digits = 4}, "R 50\n1234567891 0.6667 -0.3333\n");
-    ends_with(&s, &(anb_write_options){.digits = 0}, "R 50\n1234567891 0.6666666666666666 -0.3333333333333333\n");
+    ends_with(&s, &(anb_write_options){.digits = 0},
+              "R 50\n1234567891 0.6666666666666666 -0.3333333333333333\n");
     ends_with(&s, &(anb_write_options){.digits = 17},
               "R 50\n1234567891 0.66666666666666663 -0.33333333333333331\n");
     sheet_end(&s);
@@ -371,7 +369,7 @@ static void comments(void **state) {
     s.form.names = port;
     gives(&s, &(anb_write_options){0},
           "! 50 ??filter?# Hz S RI R 1?~\n! from dir/?.anab\n! port 1: gr??\n# Hz S RI R 50\n"
-          "1.5e9 0.11 -0.5\n");
+          "1.5e+09 0.11 -0.5\n");
     for (const char *at = s.text.bytes; *at; at++) assert_true(*at == '\n' || (*at >= 0x20 && *at <= 0x7E));
     sheet_end(&s);
 }
@@ -435,7 +433,7 @@ static void json(void **state) {
           " \"warnings\": [],\n \"matrices\": [\n"
           "  [[[0.11,-0.5],[0.12,-0.5]],[[0.21,-0.5],[0.22,-0.5]]],\n"
           "  [[[0.11,-1.5],[0.12,-1.5]],[[0.21,-1.5],[0.22,-1.5]]]],\n"
-          " \"frequencies_hz\": [1.5e9, 2.5e9]\n}\n");
+          " \"frequencies_hz\": [1.5e+09, 2.5e+09]\n}\n");
     sheet_end(&s);
 }
 
@@ -452,7 +450,7 @@ static void json_blocks(void **state) {
     anb__form_end(&s.form, false, &s.text);
     anb__text_char(&s.text, '\0');
     assert_string_equal(s.text.bytes, "\n  [[[0.11,-0.5]]],\n  [[[0.11,-0.5]]]],\n"
-                                      " \"frequencies_hz\": [1.5e9, 1.5e9\n! incomplete\n");
+                                      " \"frequencies_hz\": [1.5e+09, 1.5e+09\n! incomplete\n");
     sheet_end(&s);
 }
 
@@ -462,11 +460,12 @@ static void csv(void **state) {
     sheet_begin(&s, 2, 2, false, unlike);
     gives(&s, &(anb_write_options){.kind = ANB_CSV},
           "frequency_hz,s_1_1_re,s_1_1_im,s_1_2_re,s_1_2_im,s_2_1_re,s_2_1_im,s_2_2_re,s_2_2_im\n"
-          "1.5e9,0.11,-0.5,0.12,-0.5,0.21,-0.5,0.22,-0.5\n"
-          "2.5e9,0.11,-1.5,0.12,-1.5,0.21,-1.5,0.22,-1.5\n");
+          "1.5e+09,0.11,-0.5,0.12,-0.5,0.21,-0.5,0.22,-0.5\n"
+          "2.5e+09,0.11,-1.5,0.12,-1.5,0.21,-1.5,0.22,-1.5\n");
     sheet_end(&s);
     sheet_begin(&s, 2, 1, true, alike);
-    ends_with(&s, &(anb_write_options){.kind = ANB_CSV}, "_im\n1.5e9,0.11,-0.5,0.21,-0.5,0.21,-0.5,0.22,-0.5\n");
+    ends_with(&s, &(anb_write_options){.kind = ANB_CSV},
+              "_im\n1.5e+09,0.11,-0.5,0.21,-0.5,0.21,-0.5,0.22,-0.5\n");
     sheet_end(&s);
 }
 
@@ -487,19 +486,29 @@ static void other_forms_are_in_hertz(void **state) {
 }
 
 int main(void) {
-    const struct CMUnitTest tests[] = {
-        cmocka_unit_test(one_port),    cmocka_unit_test(two_ports),
-        cmocka_unit_test(three_ports), cmocka_unit_test(five_ports),
-        cmocka_unit_test(symmetric),   cmocka_unit_test(many_points),
-        cmocka_unit_test(version_1_1), cmocka_unit_test(version_2),
-        cmocka_unit_test(version_2_of_three_ports),
-        cmocka_unit_test(version_2_of_equal_references),
-        cmocka_unit_test(refusals),    cmocka_unit_test(units),
-        cmocka_unit_test(formats),     cmocka_unit_test(zeros),
-        cmocka_unit_test(digits),      cmocka_unit_test(round_trip),
-        cmocka_unit_test(comments),    cmocka_unit_test(incomplete),
-        cmocka_unit_test(not_finite),  cmocka_unit_test(magnitude_overflows),
-        cmocka_unit_test(json),        cmocka_unit_test(json_blocks),
-        cmocka_unit_test(csv),         cmocka_unit_test(other_forms_are_in_hertz)};
+    const struct CMUnitTest tests[] = {cmocka_unit_test(one_port),
+                                       cmocka_unit_test(two_ports),
+                                       cmocka_unit_test(three_ports),
+                                       cmocka_unit_test(five_ports),
+                                       cmocka_unit_test(symmetric),
+                                       cmocka_unit_test(many_points),
+                                       cmocka_unit_test(version_1_1),
+                                       cmocka_unit_test(version_2),
+                                       cmocka_unit_test(version_2_of_three_ports),
+                                       cmocka_unit_test(version_2_of_equal_references),
+                                       cmocka_unit_test(refusals),
+                                       cmocka_unit_test(units),
+                                       cmocka_unit_test(formats),
+                                       cmocka_unit_test(zeros),
+                                       cmocka_unit_test(digits),
+                                       cmocka_unit_test(round_trip),
+                                       cmocka_unit_test(comments),
+                                       cmocka_unit_test(incomplete),
+                                       cmocka_unit_test(not_finite),
+                                       cmocka_unit_test(magnitude_overflows),
+                                       cmocka_unit_test(json),
+                                       cmocka_unit_test(json_blocks),
+                                       cmocka_unit_test(csv),
+                                       cmocka_unit_test(other_forms_are_in_hertz)};
     return cmocka_run_group_tests(tests, NULL, NULL) ? 1 : 0;
 }
