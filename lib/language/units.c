@@ -116,6 +116,7 @@ const char *anb__unit_nearest(const char *word) {
         "ns",  "ps",   "m",    "mm",   "um",  "cm",  "V",   "mV",  "A",   "mA",   "W",  "mW",
         "deg", "rad",  "wave", "dB",   "dBm", "Np",  "%",   "ppm", "mil", "inch", "ft", "dB/m"};
     if (!strcmp(word, "in")) return "inch";
+    if (strlen(word) == 1 && !strchr("hfvaws", word[0])) return NULL; /* a name rather than a unit */
     return anb__nearest(word, usual, sizeof usual / sizeof *usual);
 }
 
