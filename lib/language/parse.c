@@ -16,7 +16,9 @@ static void begin(anb__parser *p, anb__report *report, anb__names *names, anb__a
 
 /* After a piece of text that is all there should be. */
 static void expect_end(anb__parser *p) {
-    if (!p->failed && p->now.kind != ANB__TOKEN_END) anb__expected(p, "the end");
+    if (p->failed || p->now.kind == ANB__TOKEN_END) return;
+    anb__mistake(p, anb__span_at(p, p->now.start, p->length), "expected", "nothing is expected after `%.*s`",
+                 (int)p->end_before, p->text);
 }
 
 anb__tree *anb__parse(anb__report *report, anb__names *names, anb__arena *arena, uint32_t source) {

@@ -297,11 +297,12 @@ static anb__tree *if_else(anb__parser *p, uint32_t start) {
     if (!p->failed) anb__add_child(tree, block(p));
     if (p->failed || !anb__is_word(p, "else")) return anb__end_tree(p, tree);
     anb__advance(p);
-    if (!anb__is_word(p, "if"))
+    if (!anb__is_word(p, "if")) {
         anb__add_child(tree, block(p));
-    else if (anb__deepen(p, p->now.start))
-        anb__add_child(tree, if_else(p, p->now.start));
-    if (tree->last->kind == ANB__TREE_IF) anb__rise(p);
+        return anb__end_tree(p, tree);
+    }
+    if (anb__deepen(p, p->now.start)) anb__add_child(tree, if_else(p, p->now.start));
+    anb__rise(p);
     return anb__end_tree(p, tree);
 }
 
@@ -434,13 +435,15 @@ static bool at_end(const anb__parser *p) {
            p->now.kind == ANB__TOKEN_END || p->now.kind == ANB__TOKEN_RIGHT_BRACE;
 }
 
-/* To the end of the statement: its line, or the block that it has begun. */
+/* To the end of the statement: its line, or the block that it has begun; at the latest to a line that
+ * begins with a statement's word. */
 static void skip_statement(anb__parser *p) {
     unsigned depth = 0;
     anb__close_all(p);
     while (p->now.kind != ANB__TOKEN_END) {
         if (p->now.kind == ANB__TOKEN_RIGHT_BRACE && !depth) break;
         if (!depth && (p->now.kind == ANB__TOKEN_LINE || p->now.kind == ANB__TOKEN_SEMICOLON)) break;
+        if (!depth && p->now.lines && anb__is_statement_word(p)) break;
         depth += p->now.kind == ANB__TOKEN_LEFT_BRACE;
         depth -= p->now.kind == ANB__TOKEN_RIGHT_BRACE;
         anb__advance(p);

@@ -274,7 +274,10 @@ static anb__tree *parenthesised(anb__parser *p) {
     unsigned errors = p->report->errors;
     uint32_t open = p->now.start;
     anb__tree *tree = anb__new_tree(p, ANB__TREE_GROUP, open);
-    if (!anb__deepen(p, open)) return tree;
+    if (!anb__deepen(p, open)) {
+        anb__rise(p);
+        return tree;
+    }
     anb__advance(p);
     anb__tree *inner = anb__parse_condition(p);
     if (is_condition(inner) || p->report->errors > errors) {

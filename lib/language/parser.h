@@ -36,6 +36,8 @@ bool anb__is_word(const anb__parser *p, const char *word);
 /* A word that a user may give to something. */
 bool anb__is_name(const anb__parser *p);
 bool anb__is_reserved(const anb__parser *p, anb__token token);
+/* A word that begins a statement and nothing else. */
+bool anb__is_statement_word(const anb__parser *p);
 /* Forgets open brackets: after a mistake. */
 void anb__close_all(anb__parser *p);
 

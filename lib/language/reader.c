@@ -34,6 +34,8 @@ bool anb__is_word(const anb__parser *p, const char *word) { return is_text(p->te
 
 bool anb__is_reserved(const anb__parser *p, anb__token token) { return is_reserved(p->text, token); }
 
+bool anb__is_statement_word(const anb__parser *p) { return is_one_of(p->text, p->now, statement_words); }
+
 bool anb__is_name(const anb__parser *p) {
     unsigned char first = (unsigned char)p->text[p->now.start];
     if (p->now.kind != ANB__TOKEN_WORD || anb__is_reserved(p, p->now)) return false;
@@ -52,8 +54,8 @@ bool anb__may_end(const char *text, anb__token token) {
         return true;
     case ANB__TOKEN_WORD:
         return !is_reserved(text, token) || is_one_of(text, token, value_words);
-    default:
-        return false;
+    default: /* what means nothing ends with its line, so that the next one is still read */
+        return token.kind >= ANB__TOKEN_OPEN_STRING;
     }
 }
 
